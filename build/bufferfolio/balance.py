@@ -107,12 +107,14 @@ def prepare(
         mixture.totals.shape[1:], mixture.molalities.shape[1:], constants.pKw.shape
     )
 
+    size = int(np.prod(shape, dtype=int))
+
     def flat(values: FloatArray) -> FloatArray:
         return np.ascontiguousarray(np.broadcast_to(values, shape).reshape(-1))
 
     def rows(values: FloatArray) -> FloatArray:
         count = values.shape[0]
-        return np.array([flat(values[row]) for row in range(count)]).reshape(count, -1)
+        return np.array([flat(values[row]) for row in range(count)]).reshape(count, size)
 
     net, rest = _exact_charge([ion.charge for ion in mixture.ions], mixture.molalities)
     problem = Problem(
@@ -122,7 +124,7 @@ def prepare(
         net=flat(net),
         net_rest=flat(rest),
         strength=flat(mixture.strong_strength),
-        hydrogen=np.ones(int(np.prod(shape, dtype=int))),
+        hydrogen=np.ones(size),
         hydroxide=flat(np.exp(-LN10 * constants.pKw)),
         coefficient=flat(constants.debye_huckel),
         long_range=model.long_range,

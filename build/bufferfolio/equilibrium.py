@@ -118,9 +118,7 @@ def _with_interactions(
     for _ in range(OFFSET_ROUNDS):
         guess = _solve_blocks(with_offsets(problem, offsets), guess)
         pH, strength = (-guess[0] / LN10).reshape(shape), np.exp(guess[1]).reshape(shape)
-        forms = forms_at(
-            mixture, constants, model, pH, strength, offsets.reshape(-1, *shape)
-        )
+        forms = forms_at(mixture, constants, model, pH, strength, offsets.reshape(-1, *shape))
         there = stacked(forms, mixture).reshape(matrix.shape[0], -1)
         change = matrix @ there - offsets
         largest = float(np.nanmax(np.abs(change), initial=0.0))

@@ -125,9 +125,7 @@ def stacked(forms: Forms, mixture: Mixture) -> FloatArray:
     return np.concatenate([[forms.hydrogen], [forms.hydroxide], *forms.families, strong])
 
 
-def interaction_matrix(
-    mixture: Mixture, interactions: Sequence[Interaction]
-) -> FloatArray | None:
+def interaction_matrix(mixture: Mixture, interactions: Sequence[Interaction]) -> FloatArray | None:
     """Return the pair coefficients of a mixture's species, or None where none is published.
 
     Shapes: result (species, species), symmetric.

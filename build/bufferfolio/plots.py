@@ -1,0 +1,412 @@
+"""From results to figures: what each picture of a sheet and of an explorer shows.
+
+The page's own engine draws the same pictures from its own results (`plots.js`), so that words and
+ranges are made here from numbers only, never from anything the page does not have.
+"""
+
+from collections.abc import Callable, Mapping, Sequence
+from typing import Final
+
+import numpy as np
+
+from bufferfolio.definitions import Interval
+from bufferfolio.figures import Axis, Cells, Figure, Mark, Series
+from bufferfolio.sheets import Exploration, Sheet, Side
+from bufferfolio.speciation import Mixture
+from bufferfolio.water import ZERO_CELSIUS, FloatArray
+
+PH: Final = Axis(label="pH", unit="", low=0.0, high=14.0)
+SHOWN: Final = 1e-3  # of the largest total: below it a form is not drawn
+MOST_LINES: Final = 10
+MILLI: Final = 1e3
+
+
+def fractions_figure(sheet: Sheet) -> Figure:
+    """Share of each form of each family against pH, the formulation's own pH marked."""
+    mixture, sweep = sheet.subject.mixture, sheet.sweep
+    shown = [i for i, total in enumerate(mixture.totals) if total > SHOWN * mixture.totals.max()]
+    series = [
+        Series(name=form.name, label=form.label, style=0, x=sweep.pH, y=shares[row])
+        for i in shown
+        for shares in [sweep.forms.fractions[i]]
+        for row, form in enumerate(mixture.families[i].species)
+    ]
+    pH = sheet.reference.pH
+    return Figure(
+        key="fractions",
+        kind="lines",
+        title="Forms of each family",
+        x=PH,
+        y=Axis(label="share of the family", unit="", low=0.0, high=1.0),
+        series=_styled(series),
+        marks=(Mark(axis="x", value=pH, label=f"pH {pH:.2f}"),),
+        cells=None,
+        summary=_species_words(sheet),
+    )
+
+
+def _species_words(sheet: Sheet) -> str:
+    parts = []
+    for family, total, shares in zip(
+        sheet.subject.mixture.families,
+        sheet.subject.mixture.totals,
+        sheet.reference.forms.fractions,
+        strict=True,
+    ):
+        if total > 0.0:
+            top = int(np.argmax(shares))
+            parts.append(
+                f"{shares[top] * 100:.0f} % of {family.label} as {family.species[top].label}"
+            )
+    named = "; ".join(parts) if parts else "no family is present"
+    return f"At pH {sheet.reference.pH:.2f}: {named}."
+
+
+def capacity_figure(sheet: Sheet) -> Figure:
+    """Buffer capacity against pH, within and around the limits of use."""
+    sweep, limits = sheet.sweep, sheet.subject.formulation.use_pH
+    inside = (sweep.pH >= limits.low - 1.5) & (sweep.pH <= limits.high + 1.5)
+    top = float(np.max(sweep.capacity[inside])) * MILLI
+    at = sheet.reference
+    return Figure(
+        key="capacity",
+        kind="lines",
+        title="Buffer capacity",
+        x=PH,
+        y=Axis(label="buffer capacity", unit="mmol/kg per pH", low=0.0, high=1.1 * top),
+        series=_styled(
+            [
+                Series(
+                    name="capacity", label="capacity", style=0, x=sweep.pH, y=sweep.capacity * MILLI
+                )
+            ]
+        ),
+        marks=(
+            Mark(axis="x", value=at.pH, label=f"pH {at.pH:.2f}"),
+            *_limit_marks(limits, "x"),
+        ),
+        cells=None,
+        summary=(
+            f"At its own pH of {at.pH:.2f} the formulation takes up {at.capacity * MILLI:.3g} mmol "
+            "of strong base per kg of water and pH unit."
+        ),
+    )
+
+
+def _limit_marks(limits: Interval, axis: str) -> tuple[Mark, ...]:
+    side = "x" if axis == "x" else "y"
+    return (
+        Mark(axis=side, value=limits.low, label=f"limit {limits.low:g}"),
+        Mark(axis=side, value=limits.high, label=f"limit {limits.high:g}"),
+    )
+
+
+def titration_figure(sheet: Sheet) -> Figure | None:
+    """PH after each amount of acid (left) and base (right), plain water for contrast."""
+    if not sheet.sides:
+        return None
+    own, contrast = _joined(sheet.sides)
+    marks = [
+        Mark(
+            axis="x",
+            value=_signed(side, point.amount) * MILLI,
+            label=f"equivalence, pH {point.pH:.1f}",
+        )
+        for side in sheet.sides
+        for point in side.equivalences
+        if point.visible
+    ]
+    limits = sheet.subject.formulation.use_pH
+    low = min(0.0, float(own[0][0]))
+    high = max(0.0, float(own[0][-1]))
+    return Figure(
+        key="titration",
+        kind="lines",
+        title="Titration both ways",
+        x=Axis(label=_amount_label(sheet.sides), unit="mmol per kg of water", low=low, high=high),
+        y=PH,
+        series=_styled(
+            [
+                Series(name="formulation", label="this formulation", style=0, x=own[0], y=own[1]),
+                Series(name="water", label="plain water", style=1, x=contrast[0], y=contrast[1]),
+            ]
+        ),
+        marks=(*marks, *_limit_marks(limits, "y")),
+        cells=None,
+        summary=_titration_words(sheet.sides),
+    )
+
+
+def _signed(side: Side, amount: float) -> float:
+    return -amount if side.titrant.direction == "downward" else amount
+
+
+def _amount_label(sides: Sequence[Side]) -> str:
+    names = {side.titrant.direction: side.titrant.reagent.label for side in sides}
+    left = f"← {names['downward']}" if "downward" in names else ""
+    right = f"{names['upward']} →" if "upward" in names else ""
+    return " · ".join(part for part in (left, right) if part)
+
+
+def _joined(
+    sides: Sequence[Side],
+) -> tuple[tuple[FloatArray, FloatArray], tuple[FloatArray, FloatArray]]:
+    """Put both directions on one axis, acid to the left, the start counted once."""
+    x, own, contrast = [], [], []
+    for side in sides:
+        amount, pH, water = side.curve.amount, side.curve.state.pH, side.contrast.state.pH
+        if side.titrant.direction == "downward":
+            x.append(-amount[::-1] * MILLI)
+            own.append(pH[::-1])
+            contrast.append(water[::-1])
+        else:
+            skip = 1 if x else 0
+            x.append(amount[skip:] * MILLI)
+            own.append(pH[skip:])
+            contrast.append(water[skip:])
+    axis = np.concatenate(x)
+    return (axis, np.concatenate(own)), (axis, np.concatenate(contrast))
+
+
+def _titration_words(sides: Sequence[Side]) -> str:
+    parts = []
+    for side in sides:
+        name = side.titrant.reagent.label
+        if side.reserve > 0.0:
+            parts.append(
+                f"{side.reserve * MILLI:.3g} mmol of {name} per kg of water lead to the limit of use"
+            )
+        else:
+            parts.append(f"{name} does not lead to the limit of use")
+        hidden = sum(not point.visible for point in side.equivalences)
+        if hidden:
+            parts.append(f"{hidden} equivalence point(s) with {name} do not show on the curve")
+    return "; ".join(parts) + "."
+
+
+def drift_figure(sheet: Sheet) -> Figure:
+    """PH along temperature over the range of use."""
+    celsius = sheet.drift.temperature - ZERO_CELSIUS
+    pH = sheet.drift.state.pH
+    low, high = float(np.min(pH)), float(np.max(pH))
+    expected = sheet.subject.formulation.expected
+    margin = max(0.1, 0.15 * (high - low))
+    slope = (float(pH[-1]) - float(pH[0])) / (float(celsius[-1]) - float(celsius[0]))
+    marks = [
+        Mark(
+            axis="x",
+            value=sheet.reference.temperature - ZERO_CELSIUS,
+            label=f"{sheet.reference.temperature - ZERO_CELSIUS:g} °C",
+        )
+    ]
+    if expected is not None:
+        marks.append(Mark(axis="y", value=expected.pH, label=f"expected {expected.pH:g}"))
+        low, high = min(low, expected.pH), max(high, expected.pH)
+    return Figure(
+        key="drift",
+        kind="lines",
+        title="pH and temperature",
+        x=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
+        y=Axis(label="pH", unit="", low=low - margin, high=high + margin),
+        series=_styled([Series(name="pH", label="pH", style=0, x=celsius, y=pH)]),
+        marks=tuple(marks),
+        cells=None,
+        summary=(
+            f"From {celsius[0]:g} to {celsius[-1]:g} °C the pH goes from {pH[0]:.2f} to "
+            f"{pH[-1]:.2f}, {slope:+.4f} per °C on average."
+        ),
+    )
+
+
+def surface_figure(sheet: Sheet) -> Figure | None:
+    """PH over temperature and added acid or base, as a map."""
+    surface = sheet.surface
+    if surface is None:
+        return None
+    amount = surface.amount * MILLI
+    celsius = surface.temperature - ZERO_CELSIUS
+    limits = sheet.subject.formulation.use_pH
+    return Figure(
+        key="surface",
+        kind="map",
+        title="pH over temperature and added acid or base",
+        x=Axis(
+            label=_amount_label(sheet.sides),
+            unit="mmol per kg of water",
+            low=float(amount[0]),
+            high=float(amount[-1]),
+        ),
+        y=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
+        series=(),
+        marks=(
+            Mark(axis="value", value=limits.low, label=f"limit {limits.low:g}"),
+            Mark(axis="value", value=limits.high, label=f"limit {limits.high:g}"),
+        ),
+        cells=Cells(x=edges(amount), y=edges(celsius), values=surface.pH, label="pH", unit=""),
+        summary=(
+            f"Over the temperatures of use and these additions the pH runs from "
+            f"{np.nanmin(surface.pH):.2f} to {np.nanmax(surface.pH):.2f}."
+        ),
+    )
+
+
+def edges(centres: FloatArray) -> FloatArray:
+    """Return the edges of cells around grid points, the outermost cells cut at their points.
+
+    Shapes: centres n; result n + 1.
+    Units: those of the centres.
+    Raises: nothing.
+    Source: definition.
+    """
+    middles = 0.5 * (centres[1:] + centres[:-1])
+    return np.concatenate([centres[:1], middles, centres[-1:]])
+
+
+def explorer_fractions(exploration: Exploration) -> Figure:
+    """Share of each form against pH."""
+    sweep, family = exploration.sweep, exploration.family
+    series = [
+        Series(name=form.name, label=form.label, style=0, x=sweep.pH, y=shares)
+        for form, shares in zip(family.species, sweep.forms.fractions[0], strict=True)
+    ]
+    return Figure(
+        key="fractions",
+        kind="lines",
+        title="Forms against pH",
+        x=PH,
+        y=Axis(label="share", unit="", low=0.0, high=1.0),
+        series=_styled(series),
+        marks=(),
+        cells=None,
+        summary=_crossing_words(exploration),
+    )
+
+
+def _crossing_words(exploration: Exploration) -> str:
+    """Name the pH at which neighbouring forms are equal."""
+    sweep, family = exploration.sweep, exploration.family
+    shares = sweep.forms.fractions[0]
+    parts = []
+    for step in range(len(family.steps)):
+        difference = shares[step] - shares[step + 1]
+        after = int(np.argmax(difference < 0.0))
+        if after == 0:
+            continue
+        before = after - 1
+        share = difference[before] / (difference[before] - difference[after])
+        crossing = sweep.pH[before] + share * (sweep.pH[after] - sweep.pH[before])
+        acid, base = family.species[step].label, family.species[step + 1].label
+        parts.append(f"{acid} and {base} are equal at pH {crossing:.2f}")
+    return ("; ".join(parts) if parts else "One form prevails from pH 0 to 14") + "."
+
+
+def explorer_logs(exploration: Exploration) -> Figure:
+    """Logarithm of molality against pH, water's own ions included."""
+    sweep, family = exploration.sweep, exploration.family
+    tiny = 1e-300
+    series = [
+        Series(name=form.name, label=form.label, style=0, x=sweep.pH, y=np.log10(molality + tiny))
+        for form, molality in zip(family.species, sweep.forms.families[0], strict=True)
+    ]
+    series += [
+        Series(name="H+", label="H⁺", style=0, x=sweep.pH, y=np.log10(sweep.forms.hydrogen)),
+        Series(name="OH-", label="OH⁻", style=0, x=sweep.pH, y=np.log10(sweep.forms.hydroxide)),
+    ]
+    return Figure(
+        key="logs",
+        kind="lines",
+        title="Log molality against pH",
+        x=PH,
+        y=Axis(label="log₁₀ of molality", unit="mol/kg", low=-10.0, high=0.0),
+        series=_styled(series),
+        marks=(),
+        cells=None,
+        summary=(
+            f"Forms of {family.label} at {exploration.total:g} mol/kg in all, with H⁺ and OH⁻."
+        ),
+    )
+
+
+def explorer_capacity(exploration: Exploration) -> Figure:
+    """Buffer capacity against pH."""
+    sweep = exploration.sweep
+    inside = (sweep.pH >= 2.0) & (sweep.pH <= 12.0)
+    best = int(np.argmax(np.where(inside, sweep.capacity, 0.0)))
+    return Figure(
+        key="capacity",
+        kind="lines",
+        title="Buffer capacity against pH",
+        x=PH,
+        y=Axis(
+            label="buffer capacity",
+            unit="mmol/kg per pH",
+            low=0.0,
+            high=1.3 * float(sweep.capacity[best]) * MILLI,
+        ),
+        series=_styled(
+            [
+                Series(
+                    name="capacity", label="capacity", style=0, x=sweep.pH, y=sweep.capacity * MILLI
+                )
+            ]
+        ),
+        marks=(),
+        cells=None,
+        summary=(
+            f"Between pH 2 and 12 it buffers best at pH {sweep.pH[best]:.1f}: "
+            f"{sweep.capacity[best] * MILLI:.3g} mmol/kg per pH unit."
+        ),
+    )
+
+
+def explorer_pK(exploration: Exploration) -> Figure:
+    """Each pK along temperature, within its source's range."""
+    celsius = exploration.pK_temperature - ZERO_CELSIUS
+    pairs = zip(exploration.family.species, exploration.family.species[1:], strict=False)
+    series = [
+        Series(
+            name=f"pK{row + 1}",
+            label=f"{acid.label} → {base.label}",
+            style=0,
+            x=celsius,
+            y=exploration.pK[row],
+        )
+        for row, (acid, base) in enumerate(pairs)
+    ]
+    low, high = float(np.nanmin(exploration.pK)), float(np.nanmax(exploration.pK))
+    margin = max(0.2, 0.08 * (high - low))
+    return Figure(
+        key="pK",
+        kind="lines",
+        title="pK against temperature",
+        x=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
+        y=Axis(label="pK at zero ionic strength", unit="", low=low - margin, high=high + margin),
+        series=_styled(series),
+        marks=(),
+        cells=None,
+        summary="Each line ends where the source of its constant no longer vouches for it.",
+    )
+
+
+def _styled(series: Sequence[Series]) -> tuple[Series, ...]:
+    """Give each line its style by its place, and leave out what could not be told apart."""
+    return tuple(
+        Series(name=line.name, label=line.label, style=place, x=line.x, y=line.y)
+        for place, line in enumerate(series[:MOST_LINES])
+    )
+
+
+SHEET_FIGURES: Final[Mapping[str, Callable[[Sheet], Figure | None]]] = {
+    "fractions": fractions_figure,
+    "capacity": capacity_figure,
+    "titration": titration_figure,
+    "drift": drift_figure,
+    "surface": surface_figure,
+}
+
+EXPLORER_FIGURES: Final[Mapping[str, Callable[[Exploration], Figure]]] = {
+    "fractions": explorer_fractions,
+    "logs": explorer_logs,
+    "capacity": explorer_capacity,
+    "pK": explorer_pK,
+}
