@@ -57,23 +57,15 @@ def sweep(
     problem, shape = prepare(mixture, constants, model)
     matrix = interaction_matrix(mixture, interactions) if model.uses_interactions else None
     x = (-LN10 * pH).reshape(-1)
-    fixed = None if ionic_strength is None else np.log(ionic_strength).reshape(-1)
+    held = None if ionic_strength is None else np.log(ionic_strength).reshape(-1)
+    u = _strength(problem, x) if held is None else held
     offsets: FloatArray | None = None
-    u = _strength(problem, x) if fixed is None else fixed
-    for _ in range(ROUNDS if matrix is not None else 0):
-        forms = forms_at(mixture, constants, model, pH, np.exp(u).reshape(shape), offsets)
-        new = np.tensordot(matrix, stacked(forms, mixture), axes=1)
-        settled = offsets is not None and bool(np.max(np.abs(new - offsets)) < SETTLED)
-        offsets = new
-        if settled:
-            break
-        if fixed is None:
-            u = _strength(with_offsets(problem, offsets.reshape(len(offsets), -1)), x)
-    if offsets is not None:
+    if matrix is not None:
+        u, offsets = _settle_pairs(mixture, constants, model, pH, held, matrix)
         problem = with_offsets(problem, offsets.reshape(len(offsets), -1))
     there = sums(problem, x, u)
     base = there.minus - there.plus
-    slope = _capacity(there, np.exp(u), np.copysign(1.0, base), held=fixed is not None)
+    slope = _capacity(there, np.exp(u), np.copysign(1.0, base), held=held is not None)
     strength = np.exp(u).reshape(shape)
     return Sweep(
         pH=pH,
@@ -82,6 +74,29 @@ def sweep(
         capacity=slope.reshape(shape),
         forms=forms_at(mixture, constants, model, pH, strength, offsets),
     )
+
+
+def _settle_pairs(
+    mixture: Mixture,
+    constants: Constants,
+    model: ActivityModel,
+    pH: FloatArray,
+    held: FloatArray | None,
+    matrix: FloatArray,
+) -> tuple[FloatArray, FloatArray]:
+    """Return ln I and the pair terms at each pH, repeated until these stand still."""
+    problem, shape = prepare(mixture, constants, model)
+    x = (-LN10 * pH).reshape(-1)
+    u = _strength(problem, x) if held is None else held
+    offsets = np.zeros((matrix.shape[0], *shape))
+    for _ in range(ROUNDS):
+        forms = forms_at(mixture, constants, model, pH, np.exp(u).reshape(shape), offsets)
+        last, offsets = offsets, np.tensordot(matrix, stacked(forms, mixture), axes=1)
+        if held is None:
+            u = _strength(with_offsets(problem, offsets.reshape(len(offsets), -1)), x)
+        if np.max(np.abs(offsets - last)) < SETTLED:
+            break
+    return u, offsets
 
 
 def buffer_capacity(
@@ -105,18 +120,21 @@ def buffer_capacity(
         problem = with_offsets(problem, state.offsets.reshape(len(state.offsets), -1))
     strength = state.ionic_strength.reshape(-1)
     there = sums(problem, (-LN10 * state.pH).reshape(-1), np.log(strength))
-    return _capacity(there, strength, np.ones_like(strength), held=False).reshape(shape)
+    result: FloatArray = _capacity(there, strength, np.ones_like(strength), held=False)
+    return result.reshape(shape)
 
 
 def _capacity(there: Sums, strength: FloatArray, sign: FloatArray, *, held: bool) -> FloatArray:
     """Differentiate the charge by pH; `sign` is +1 where base is added, −1 where acid is taken."""
     charge_x = there.by_x[0] - there.by_x[1]
     if held:
-        return LN10 * charge_x
+        at_held: FloatArray = LN10 * charge_x
+        return at_held
     charge_u = there.by_u[0] - there.by_u[1]
     # I = ½ (Σ z² m + |b|) with b = −charge, so both sides of it move with x.
     u_x = (there.by_x[2] - sign * charge_x) / (2.0 * strength - there.by_u[2] + sign * charge_u)
-    return LN10 * (charge_x + charge_u * u_x)
+    result: FloatArray = LN10 * (charge_x + charge_u * u_x)
+    return result
 
 
 def _strength(problem: Problem, x: FloatArray) -> FloatArray:

@@ -176,9 +176,9 @@ def mixed(mixture: Mixture, added: Addition, amount: FloatArray) -> Mixture:
         strong[row] = strong[row] + share * amount
     return Mixture(
         families=mixture.families,
-        totals=np.array(totals).reshape(-1, *amount.shape) / dilution,
+        totals=np.array(totals).reshape(len(totals), *amount.shape) / dilution,
         ions=mixture.ions,
-        molalities=np.array(strong).reshape(-1, *amount.shape) / dilution,
+        molalities=np.array(strong).reshape(len(strong), *amount.shape) / dilution,
     )
 
 

@@ -6,7 +6,6 @@ constants; results in the cases likewise, because they are compared to 1e-9.
 
 from typing import Final
 
-
 from bufferfolio.activity import MODELS
 from bufferfolio.composition import Addition, moles
 from bufferfolio.definitions import Family, Interaction, Ion, PublishedEquation, Step, Titrant

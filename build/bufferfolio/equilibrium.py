@@ -111,26 +111,25 @@ def _with_interactions(
     matrix: FloatArray,
 ) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Repeat the solution with the pair terms of the last round until these stand still."""
-    shape = np.broadcast_shapes(mixture.totals.shape[1:], constants.pKw.shape)
+    shape = np.broadcast_shapes(
+        mixture.totals.shape[1:], mixture.molalities.shape[1:], constants.pKw.shape
+    )
     offsets = np.zeros((matrix.shape[0], problem.size))
-    guess = None
+    ln_h, ln_i = _solve_blocks(problem)
     step, last = 1.0, np.inf
     for _ in range(OFFSET_ROUNDS):
-        guess = _solve_blocks(with_offsets(problem, offsets), guess)
-        pH, strength = (-guess[0] / LN10).reshape(shape), np.exp(guess[1]).reshape(shape)
+        pH, strength = (-ln_h / LN10).reshape(shape), np.exp(ln_i).reshape(shape)
         forms = forms_at(mixture, constants, model, pH, strength, offsets.reshape(-1, *shape))
         there = stacked(forms, mixture).reshape(matrix.shape[0], -1)
         change = matrix @ there - offsets
-        largest = float(np.nanmax(np.abs(change), initial=0.0))
-        offsets = offsets + step * change
+        moving = np.max(np.abs(change), axis=0, initial=0.0)
+        largest = float(np.nanmax(moving, initial=0.0))
         if largest < OFFSET_TOLERANCE:
-            return guess[0], guess[1], offsets
+            break
         # A round that did not come closer calls for caution.
         step = max(0.25, 0.5 * step) if largest > 0.9 * last else step
         last = largest
-    moving = np.nanmax(np.abs(change), axis=0, initial=0.0) > OFFSET_TOLERANCE
-    return (
-        np.where(moving, np.nan, guess[0]),
-        np.where(moving, np.nan, guess[1]),
-        offsets,
-    )
+        offsets = offsets + step * change
+        ln_h, ln_i = _solve_blocks(with_offsets(problem, offsets), (ln_h, ln_i))
+    settled = moving < OFFSET_TOLERANCE
+    return np.where(settled, ln_h, np.nan), np.where(settled, ln_i, np.nan), offsets

@@ -5,14 +5,13 @@ ranges are made here from numbers only, never from anything the page does not ha
 """
 
 from collections.abc import Callable, Mapping, Sequence
-from typing import Final
+from typing import Final, Literal
 
 import numpy as np
 
 from bufferfolio.definitions import Interval
 from bufferfolio.figures import Axis, Cells, Figure, Mark, Series
 from bufferfolio.sheets import Exploration, Sheet, Side
-from bufferfolio.speciation import Mixture
 from bufferfolio.water import ZERO_CELSIUS, FloatArray
 
 PH: Final = Axis(label="pH", unit="", low=0.0, high=14.0)
@@ -93,11 +92,10 @@ def capacity_figure(sheet: Sheet) -> Figure:
     )
 
 
-def _limit_marks(limits: Interval, axis: str) -> tuple[Mark, ...]:
-    side = "x" if axis == "x" else "y"
+def _limit_marks(limits: Interval, axis: Literal["x", "y"]) -> tuple[Mark, ...]:
     return (
-        Mark(axis=side, value=limits.low, label=f"limit {limits.low:g}"),
-        Mark(axis=side, value=limits.high, label=f"limit {limits.high:g}"),
+        Mark(axis=axis, value=limits.low, label=f"limit {limits.low:g}"),
+        Mark(axis=axis, value=limits.high, label=f"limit {limits.high:g}"),
     )
 
 
@@ -174,7 +172,8 @@ def _titration_words(sides: Sequence[Side]) -> str:
         name = side.titrant.reagent.label
         if side.reserve > 0.0:
             parts.append(
-                f"{side.reserve * MILLI:.3g} mmol of {name} per kg of water lead to the limit of use"
+                f"{side.reserve * MILLI:.3g} mmol of {name} per kg of water lead to the limit "
+                "of use"
             )
         else:
             parts.append(f"{name} does not lead to the limit of use")

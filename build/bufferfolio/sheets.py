@@ -314,12 +314,12 @@ def _warnings(
 ) -> tuple[str, ...]:
     formulation = subject.formulation
     found = []
-    if deviation is not None and formulation.expected is not None:
-        if abs(deviation) > formulation.expected.tolerance:
-            found.append(
-                f"computed pH {reference.pH:.3f} is {deviation:+.3f} from the expected "
-                f"{formulation.expected.pH:g}, tolerance {formulation.expected.tolerance:g}"
-            )
+    expected = formulation.expected
+    if expected and deviation is not None and abs(deviation) > expected.tolerance:
+        found.append(
+            f"computed pH {reference.pH:.3f} is {deviation:+.3f} from the expected "
+            f"{expected.pH:g}, tolerance {expected.tolerance:g}"
+        )
     outside = drift.state.status == Status.OUT_OF_RANGE
     if outside.any():
         worst = drift.temperature[outside] - ZERO_CELSIUS
@@ -334,9 +334,11 @@ def _warnings(
         )
     if not formulation.use_pH.holds(reference.pH):
         found.append(f"computed pH {reference.pH:.2f} lies outside the limits of use")
-    for side in sides:
-        if not side.reserve > 0.0:
-            found.append(f"{side.titrant.label} never brings it to the limit of use")
+    found.extend(
+        f"{side.titrant.label} never brings it to the limit of use"
+        for side in sides
+        if not side.reserve > 0.0
+    )
     return tuple(found)
 
 

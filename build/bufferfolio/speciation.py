@@ -73,8 +73,9 @@ def fractions(
     if offsets is not None:
         logs = logs - offsets
     # Taken from the largest so that nothing overflows.
-    weights: FloatArray = np.exp(LN10 * (logs - logs.max(axis=0)))
-    return weights / weights.sum(axis=0)
+    weights = np.exp(LN10 * (logs - logs.max(axis=0)))
+    result: FloatArray = weights / weights.sum(axis=0)
+    return result
 
 
 def forms_at(
