@@ -120,8 +120,9 @@ def buffer_capacity(
         problem = with_offsets(problem, state.offsets.reshape(len(state.offsets), -1))
     strength = state.ionic_strength.reshape(-1)
     there = sums(problem, (-LN10 * state.pH).reshape(-1), np.log(strength))
-    result: FloatArray = _capacity(there, strength, np.ones_like(strength), held=False)
-    return result.reshape(shape)
+    flat = _capacity(there, strength, np.ones_like(strength), held=False)
+    result: FloatArray = flat.reshape(shape)
+    return result
 
 
 def _capacity(there: Sums, strength: FloatArray, sign: FloatArray, *, held: bool) -> FloatArray:

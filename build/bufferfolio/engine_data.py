@@ -9,7 +9,9 @@ from typing import Final
 from bufferfolio.activity import MODELS
 from bufferfolio.composition import Addition, moles
 from bufferfolio.definitions import Family, Interaction, Ion, PublishedEquation, Step, Titrant
-from bufferfolio.sheets import Exploration, Sheet, State, Subject, exploration_of, state_at
+from bufferfolio.explorations import Exploration, exploration_of
+from bufferfolio.sheets import Sheet
+from bufferfolio.subjects import State, Subject, state_at
 
 Data = dict[str, object]
 

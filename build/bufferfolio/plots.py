@@ -1,4 +1,4 @@
-"""From results to figures: what each picture of a sheet and of an explorer shows.
+"""From results to figures: what each picture of a sheet shows.
 
 The page's own engine draws the same pictures from its own results (`plots.js`), so that words and
 ranges are made here from numbers only, never from anything the page does not have.
@@ -11,7 +11,7 @@ import numpy as np
 
 from bufferfolio.definitions import Interval
 from bufferfolio.figures import Axis, Cells, Figure, Mark, Series
-from bufferfolio.sheets import Exploration, Sheet, Side
+from bufferfolio.sheets import Sheet, Side
 from bufferfolio.water import ZERO_CELSIUS, FloatArray
 
 PH: Final = Axis(label="pH", unit="", low=0.0, high=14.0)
@@ -37,7 +37,7 @@ def fractions_figure(sheet: Sheet) -> Figure:
         title="Forms of each family",
         x=PH,
         y=Axis(label="share of the family", unit="", low=0.0, high=1.0),
-        series=_styled(series),
+        series=styled(series),
         marks=(Mark(axis="x", value=pH, label=f"pH {pH:.2f}"),),
         cells=None,
         summary=_species_words(sheet),
@@ -73,7 +73,7 @@ def capacity_figure(sheet: Sheet) -> Figure:
         title="Buffer capacity",
         x=PH,
         y=Axis(label="buffer capacity", unit="mmol/kg per pH", low=0.0, high=1.1 * top),
-        series=_styled(
+        series=styled(
             [
                 Series(
                     name="capacity", label="capacity", style=0, x=sweep.pH, y=sweep.capacity * MILLI
@@ -123,7 +123,7 @@ def titration_figure(sheet: Sheet) -> Figure | None:
         title="Titration both ways",
         x=Axis(label=_amount_label(sheet.sides), unit="mmol per kg of water", low=low, high=high),
         y=PH,
-        series=_styled(
+        series=styled(
             [
                 Series(name="formulation", label="this formulation", style=0, x=own[0], y=own[1]),
                 Series(name="water", label="plain water", style=1, x=contrast[0], y=contrast[1]),
@@ -207,7 +207,7 @@ def drift_figure(sheet: Sheet) -> Figure:
         title="pH and temperature",
         x=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
         y=Axis(label="pH", unit="", low=low - margin, high=high + margin),
-        series=_styled([Series(name="pH", label="pH", style=0, x=celsius, y=pH)]),
+        series=styled([Series(name="pH", label="pH", style=0, x=celsius, y=pH)]),
         marks=tuple(marks),
         cells=None,
         summary=(
@@ -261,133 +261,7 @@ def edges(centres: FloatArray) -> FloatArray:
     return np.concatenate([centres[:1], middles, centres[-1:]])
 
 
-def explorer_fractions(exploration: Exploration) -> Figure:
-    """Share of each form against pH."""
-    sweep, family = exploration.sweep, exploration.family
-    series = [
-        Series(name=form.name, label=form.label, style=0, x=sweep.pH, y=shares)
-        for form, shares in zip(family.species, sweep.forms.fractions[0], strict=True)
-    ]
-    return Figure(
-        key="fractions",
-        kind="lines",
-        title="Forms against pH",
-        x=PH,
-        y=Axis(label="share", unit="", low=0.0, high=1.0),
-        series=_styled(series),
-        marks=(),
-        cells=None,
-        summary=_crossing_words(exploration),
-    )
-
-
-def _crossing_words(exploration: Exploration) -> str:
-    """Name the pH at which neighbouring forms are equal."""
-    sweep, family = exploration.sweep, exploration.family
-    shares = sweep.forms.fractions[0]
-    parts = []
-    for step in range(len(family.steps)):
-        difference = shares[step] - shares[step + 1]
-        after = int(np.argmax(difference < 0.0))
-        if after == 0:
-            continue
-        before = after - 1
-        share = difference[before] / (difference[before] - difference[after])
-        crossing = sweep.pH[before] + share * (sweep.pH[after] - sweep.pH[before])
-        acid, base = family.species[step].label, family.species[step + 1].label
-        parts.append(f"{acid} and {base} are equal at pH {crossing:.2f}")
-    return ("; ".join(parts) if parts else "One form prevails from pH 0 to 14") + "."
-
-
-def explorer_logs(exploration: Exploration) -> Figure:
-    """Logarithm of molality against pH, water's own ions included."""
-    sweep, family = exploration.sweep, exploration.family
-    tiny = 1e-300
-    series = [
-        Series(name=form.name, label=form.label, style=0, x=sweep.pH, y=np.log10(molality + tiny))
-        for form, molality in zip(family.species, sweep.forms.families[0], strict=True)
-    ]
-    series += [
-        Series(name="H+", label="H⁺", style=0, x=sweep.pH, y=np.log10(sweep.forms.hydrogen)),
-        Series(name="OH-", label="OH⁻", style=0, x=sweep.pH, y=np.log10(sweep.forms.hydroxide)),
-    ]
-    return Figure(
-        key="logs",
-        kind="lines",
-        title="Log molality against pH",
-        x=PH,
-        y=Axis(label="log₁₀ of molality", unit="mol/kg", low=-10.0, high=0.0),
-        series=_styled(series),
-        marks=(),
-        cells=None,
-        summary=(
-            f"Forms of {family.label} at {exploration.total:g} mol/kg in all, with H⁺ and OH⁻."
-        ),
-    )
-
-
-def explorer_capacity(exploration: Exploration) -> Figure:
-    """Buffer capacity against pH."""
-    sweep = exploration.sweep
-    inside = (sweep.pH >= 2.0) & (sweep.pH <= 12.0)
-    best = int(np.argmax(np.where(inside, sweep.capacity, 0.0)))
-    return Figure(
-        key="capacity",
-        kind="lines",
-        title="Buffer capacity against pH",
-        x=PH,
-        y=Axis(
-            label="buffer capacity",
-            unit="mmol/kg per pH",
-            low=0.0,
-            high=1.3 * float(sweep.capacity[best]) * MILLI,
-        ),
-        series=_styled(
-            [
-                Series(
-                    name="capacity", label="capacity", style=0, x=sweep.pH, y=sweep.capacity * MILLI
-                )
-            ]
-        ),
-        marks=(),
-        cells=None,
-        summary=(
-            f"Between pH 2 and 12 it buffers best at pH {sweep.pH[best]:.1f}: "
-            f"{sweep.capacity[best] * MILLI:.3g} mmol/kg per pH unit."
-        ),
-    )
-
-
-def explorer_pK(exploration: Exploration) -> Figure:
-    """Each pK along temperature, within its source's range."""
-    celsius = exploration.pK_temperature - ZERO_CELSIUS
-    pairs = zip(exploration.family.species, exploration.family.species[1:], strict=False)
-    series = [
-        Series(
-            name=f"pK{row + 1}",
-            label=f"{acid.label} → {base.label}",
-            style=0,
-            x=celsius,
-            y=exploration.pK[row],
-        )
-        for row, (acid, base) in enumerate(pairs)
-    ]
-    low, high = float(np.nanmin(exploration.pK)), float(np.nanmax(exploration.pK))
-    margin = max(0.2, 0.08 * (high - low))
-    return Figure(
-        key="pK",
-        kind="lines",
-        title="pK against temperature",
-        x=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
-        y=Axis(label="pK at zero ionic strength", unit="", low=low - margin, high=high + margin),
-        series=_styled(series),
-        marks=(),
-        cells=None,
-        summary="Each line ends where the source of its constant no longer vouches for it.",
-    )
-
-
-def _styled(series: Sequence[Series]) -> tuple[Series, ...]:
+def styled(series: Sequence[Series]) -> tuple[Series, ...]:
     """Give each line its style by its place, and leave out what could not be told apart."""
     return tuple(
         Series(name=line.name, label=line.label, style=place, x=line.x, y=line.y)
@@ -401,11 +275,4 @@ SHEET_FIGURES: Final[Mapping[str, Callable[[Sheet], Figure | None]]] = {
     "titration": titration_figure,
     "drift": drift_figure,
     "surface": surface_figure,
-}
-
-EXPLORER_FIGURES: Final[Mapping[str, Callable[[Exploration], Figure]]] = {
-    "fractions": explorer_fractions,
-    "logs": explorer_logs,
-    "capacity": explorer_capacity,
-    "pK": explorer_pK,
 }

@@ -1,4 +1,4 @@
-"""Every analysis of one formulation or one family, as records that a page or a command shows."""
+"""Every analysis of one formulation, as records that a page or a command shows."""
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
@@ -6,62 +6,20 @@ from typing import Final
 
 import numpy as np
 
-from bufferfolio.activity import MODELS, ActivityModel
-from bufferfolio.buffering import (
-    Estimate,
-    Sweep,
-    buffer_capacity,
-    henderson_hasselbalch,
-    sweep,
-)
-from bufferfolio.composition import (
-    Addition,
-    addition,
-    contents,
-    mixed,
-    pure_water,
-    scaled,
-    water_mass,
-)
-from bufferfolio.definitions import Family, Formulation, Interaction, Library, Titrant
+from bufferfolio.buffering import Estimate, Sweep, henderson_hasselbalch, sweep
+from bufferfolio.composition import Addition, pure_water, scaled
+from bufferfolio.definitions import Formulation, Library, Titrant
 from bufferfolio.equilibrium import Equilibrium, Status, solve
-from bufferfolio.speciation import Forms, Mixture, forms_at
+from bufferfolio.subjects import State, Subject, reference_temperature, state_at, subject_of
 from bufferfolio.temperature import constants_at
 from bufferfolio.titration import Curve, Equivalence, amount_to_reach, equivalences, titrate
 from bufferfolio.water import ZERO_CELSIUS, FloatArray
 
-STANDARD_TEMPERATURE: Final = 298.15  # K
 SWEEP_POINTS: Final = 141  # pH 0 to 14 in tenths
 DRIFT_POINTS: Final = 41
 TITRATION_POINTS: Final = 81  # a side
 MAP_SHAPE: Final = (21, 41)  # temperatures, amounts
 SMALLEST_RANGE: Final = 2e-5  # mol/kg; what shows the response of plain water
-EXPLORER_TOTAL: Final = 0.05  # mol/kg
-EXPLORER_STRENGTH: Final = 0.1  # mol/kg
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Subject:
-    """A formulation ready for questions: what it holds, and by which model it is reckoned."""
-
-    formulation: Formulation
-    mixture: Mixture  # of one kg of water; lists the titrants' families and ions too
-    water: float  # kg in the make-up
-    model: ActivityModel
-    interactions: tuple[Interaction, ...]  # among the species present
-    additions: tuple[Addition, ...]  # one a titrant, at the make-up temperature
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class State:
-    """One solution at one temperature."""
-
-    temperature: float  # K
-    pH: float
-    ionic_strength: float  # mol/kg
-    capacity: float  # mol/kg per pH
-    status: Status
-    forms: Forms  # arrays of shape (forms,)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -106,77 +64,6 @@ class Sheet:
     sides: tuple[Side, ...]  # at the reference temperature, at most one a direction
     surface: Surface | None  # None where the formulation has no titrant
     warnings: tuple[str, ...]
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Exploration:
-    """Everything that the page of a family shows."""
-
-    family: Family
-    temperature: float  # K
-    total: float  # mol/kg
-    ionic_strength: float  # mol/kg, held by an inert salt
-    model: ActivityModel
-    sweep: Sweep
-    pK_temperature: FloatArray  # n, K
-    pK: FloatArray  # (steps, n), NaN outside a step's range
-
-
-def subject_of(formulation: Formulation, library: Library) -> Subject:
-    """Return a formulation with its composition and what is needed to reckon with it."""
-    reagents = tuple(titrant.reagent for titrant in formulation.titrants)
-    mixture = contents(formulation, library.families, reagents)
-    present = set(mixture.species)
-    return Subject(
-        formulation=formulation,
-        mixture=mixture,
-        water=water_mass(formulation.make_up),
-        model=MODELS[formulation.model],
-        interactions=tuple(
-            pair
-            for pair in library.interactions
-            if pair.cation in present and pair.anion in present
-        ),
-        additions=tuple(
-            addition(titrant, library.families, formulation.make_up.temperature)
-            for titrant in formulation.titrants
-        ),
-    )
-
-
-def reference_temperature(formulation: Formulation) -> float:
-    """Return the temperature at which a sheet is drawn: of the expected pH, or of the make-up."""
-    if formulation.expected is not None:
-        return formulation.expected.temperature
-    return formulation.make_up.temperature
-
-
-def state_at(
-    subject: Subject,
-    temperature: float,
-    strength: float = 1.0,
-    additions: Sequence[tuple[Addition, float]] = (),
-) -> State:
-    """Return the state of a formulation at one temperature.
-
-    `strength` multiplies everything in the water; `additions` are mol per kg of its water.
-    """
-    mixture = scaled(subject.mixture, np.array(strength))
-    for added, amount in additions:
-        mixture = mixed(mixture, added, np.array(amount))
-    constants = constants_at(mixture.families, np.array(temperature))
-    solved = solve(mixture, constants, subject.model, subject.interactions)
-    capacity = buffer_capacity(mixture, constants, subject.model, solved)
-    return State(
-        temperature=temperature,
-        pH=float(solved.pH),
-        ionic_strength=float(solved.ionic_strength),
-        capacity=float(capacity),
-        status=Status(int(solved.status)),
-        forms=forms_at(
-            mixture, constants, subject.model, solved.pH, solved.ionic_strength, solved.offsets
-        ),
-    )
 
 
 def drift_of(subject: Subject) -> Drift:
@@ -340,40 +227,6 @@ def _warnings(
         if not side.reserve > 0.0
     )
     return tuple(found)
-
-
-def exploration_of(
-    family: Family,
-    temperature: float = STANDARD_TEMPERATURE,
-    total: float = EXPLORER_TOTAL,
-    ionic_strength: float = EXPLORER_STRENGTH,
-) -> Exploration:
-    """Return every analysis of a family on its own, an inert salt holding the ionic strength."""
-    pH = np.linspace(0.0, 14.0, SWEEP_POINTS)
-    ones = np.ones(SWEEP_POINTS)
-    alone = Mixture(
-        families=(family,),
-        totals=np.array([total * ones]),
-        ions=(),
-        molalities=np.empty((0, SWEEP_POINTS)),
-    )
-    constants = constants_at(alone.families, temperature * ones)
-    model = MODELS["davies"]
-    axis = np.linspace(ZERO_CELSIUS, ZERO_CELSIUS + 60.0, 61)
-    pK = np.array([constants_at((family,), axis).pK[0]]).reshape(-1, axis.size)
-    for row, step in enumerate(family.steps):
-        valid = step.valid_temperature
-        pK[row, (axis < valid.low - 1e-3) | (axis > valid.high + 1e-3)] = np.nan
-    return Exploration(
-        family=family,
-        temperature=temperature,
-        total=total,
-        ionic_strength=ionic_strength,
-        model=model,
-        sweep=sweep(alone, constants, model, pH, ionic_strength=ionic_strength * ones),
-        pK_temperature=axis,
-        pK=pK,
-    )
 
 
 def sheets_of(library: Library) -> Mapping[str, Sheet]:
