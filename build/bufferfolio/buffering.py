@@ -141,7 +141,8 @@ def _capacity(there: Sums, strength: FloatArray, sign: FloatArray, *, held: bool
 def _strength(problem: Problem, x: FloatArray) -> FloatArray:
     """Return ln I at a given pH, strong acid or base balancing the charge."""
     low, high = np.full_like(x, LOW_U), np.full_like(x, HIGH_U)
-    u = np.log(0.5 * (problem.strength + np.abs(problem.net)) + problem.totals.sum(axis=0) + 1e-7)
+    guess = 0.5 * (problem.strength + np.abs(problem.net)) + problem.totals.sum(axis=0) + 1e-7
+    u: FloatArray = np.log(guess)
     for _ in range(ROUNDS):
         there = sums(problem, x, u)
         charge = there.plus - there.minus

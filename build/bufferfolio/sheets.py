@@ -19,6 +19,7 @@ SWEEP_POINTS: Final = 141  # pH 0 to 14 in tenths
 DRIFT_POINTS: Final = 41
 TITRATION_POINTS: Final = 81  # a side
 MAP_SHAPE: Final = (21, 41)  # temperatures, amounts
+MOST_DILUTION: Final = 1.0  # kg of titrant's water per kg of the batch's
 SMALLEST_RANGE: Final = 2e-5  # mol/kg; what shows the response of plain water
 
 
@@ -101,7 +102,7 @@ def _side(subject: Subject, titrant: Titrant, added: Addition, temperature: floa
     common = (temperature, subject.model, subject.interactions)
     reserve = amount_to_reach(subject.mixture, added, limit, *common)
     points = equivalences(subject.mixture, added, *common)
-    amount = np.linspace(0.0, titration_range(reserve, points), TITRATION_POINTS)
+    amount = np.linspace(0.0, titration_range(reserve, points, added.water), TITRATION_POINTS)
     kelvin = np.array(temperature)
     rest = (kelvin, subject.model, subject.interactions)
     return Side(
@@ -114,17 +115,20 @@ def _side(subject: Subject, titrant: Titrant, added: Addition, temperature: floa
     )
 
 
-def titration_range(reserve: float, points: Sequence[Equivalence]) -> float:
+def titration_range(reserve: float, points: Sequence[Equivalence], water: float) -> float:
     """Return how far a titration is drawn: beyond the reserve and the last visible equivalence.
 
+    It ends at the latest where the titrant's own water has doubled the batch.
+
     Shapes: result scalar.
-    Units: mol per kg of water.
+    Units: reserve and result mol per kg of water; water kg brought by one mole of titrant.
     Raises: nothing.
     Source: own choice.
     """
     seen = [1.25 * point.amount for point in points if point.visible]
     known = [1.5 * reserve] if reserve > 0.0 else []
-    return max([SMALLEST_RANGE, *seen, *known])
+    wanted = max([SMALLEST_RANGE, *seen, *known])
+    return min(wanted, MOST_DILUTION / water) if water > 0.0 else wanted
 
 
 def surface_of(subject: Subject, sides: Sequence[Side]) -> Surface | None:
@@ -166,7 +170,8 @@ def surface_range(side: Side) -> float:
     Raises: nothing.
     Source: own choice.
     """
-    return 1.2 * side.reserve if side.reserve > 0.0 else float(side.curve.amount[-1])
+    drawn = float(side.curve.amount[-1])
+    return min(1.2 * side.reserve, drawn) if side.reserve > 0.0 else drawn
 
 
 def sheet_of(formulation: Formulation, library: Library) -> Sheet:
