@@ -121,7 +121,7 @@ def titration_figure(sheet: Sheet) -> Figure | None:
         key="titration",
         kind="lines",
         title="Titration both ways",
-        x=Axis(label=_amount_label(sheet.sides), unit="mmol per kg of water", low=low, high=high),
+        x=Axis(label=_amount_label(sheet.sides), unit="mmol/kg", low=low, high=high),
         y=PH,
         series=styled(
             [
@@ -140,10 +140,12 @@ def _signed(side: Side, amount: float) -> float:
 
 
 def _amount_label(sides: Sequence[Side]) -> str:
-    names = {side.titrant.direction: side.titrant.reagent.label for side in sides}
-    left = f"← {names['downward']}" if "downward" in names else ""
-    right = f"{names['upward']} →" if "upward" in names else ""
-    return " · ".join(part for part in (left, right) if part)
+    directions = {side.titrant.direction for side in sides}
+    if directions == {"downward"}:
+        return "acid added"
+    if directions == {"upward"}:
+        return "base added"
+    return "acid ← added → base"
 
 
 def _joined(
@@ -231,7 +233,7 @@ def surface_figure(sheet: Sheet) -> Figure | None:
         title="pH over temperature and added acid or base",
         x=Axis(
             label=_amount_label(sheet.sides),
-            unit="mmol per kg of water",
+            unit="mmol/kg",
             low=float(amount[0]),
             high=float(amount[-1]),
         ),
