@@ -81,7 +81,9 @@ def balance_charge(problem: Problem, u: FloatArray, x: FloatArray) -> FloatArray
         low = np.where(state.charge < 0.0, np.maximum(low, x), low)
         high = np.where(state.charge > 0.0, np.minimum(high, x), high)
         target = x - state.charge / state.charge_x
-        inside = (target > low) & (target < high)
+        # At the root the bracket's end is the root itself: a step of nothing is still inside.
+        resting = np.abs(target - x) < 1e-13 * (1.0 + np.abs(x))
+        inside = ((target > low) & (target < high)) | resting
         following = np.where(inside, target, 0.5 * (low + high))
         following = np.where(state.charge == 0.0, x, following)
         done = np.abs(following - x) < 1e-13 * (1.0 + np.abs(x))

@@ -153,7 +153,9 @@ def _strength(problem: Problem, x: FloatArray) -> FloatArray:
         low = np.where(excess < 0.0, u, low)
         high = np.where(excess > 0.0, u, high)
         target = u - excess / slope
-        following = np.where((target > low) & (target < high), target, 0.5 * (low + high))
+        # At the root the bracket's end is the root itself: a step of nothing is still inside.
+        inside = ((target > low) & (target < high)) | (np.abs(target - u) < SETTLED)
+        following = np.where(inside, target, 0.5 * (low + high))
         following = np.where(excess == 0.0, u, following)
         done = bool(np.all(np.abs(following - u) < SETTLED))
         u = following

@@ -1,0 +1,125 @@
+"""What figures look like: line colours with their dashes, map colours, and the style sheet.
+
+Colours come in pairs, for light and for dark pages, and reach the drawings as CSS custom
+properties: one drawing serves both, and print. Every colour holds 4.5 : 1 against its surface, so
+labels may wear it; every line style has a dash pattern of its own, so none needs its colour.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Final
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Style:
+    """How one series looks."""
+
+    light: str  # colour on a light page
+    dark: str  # colour on a dark page
+    dash: tuple[int, ...]  # lengths of stroke and gap in px; empty: solid
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Surface:
+    """What lies under and around the series."""
+
+    name: str  # of the custom property
+    light: str
+    dark: str
+
+
+STYLES: Final = (
+    Style(light="#1c5fa8", dark="#7db4f0", dash=()),
+    Style(light="#b5430e", dark="#f39a6b", dash=(10, 4)),
+    Style(light="#0a7659", dark="#5cc9a3", dash=(3, 3)),
+    Style(light="#8e3d86", dark="#d99ad3", dash=(11, 3, 2, 3)),
+    Style(light="#856500", dark="#d9b64a", dash=(6, 3)),
+    Style(light="#464e55", dark="#b9c2c9", dash=(11, 3, 2, 3, 2, 3)),
+    Style(light="#a32643", dark="#f08fa2", dash=(2, 5)),
+    Style(light="#5146a8", dark="#aea6f5", dash=(16, 5)),
+    Style(light="#5d6c10", dark="#b4c36a", dash=(6, 2, 2, 2)),
+    Style(light="#6b4a35", dark="#cfa78c", dash=(4, 6)),
+)
+
+# From pale to deep on a light page and from deep to bright on a dark one: the order survives a
+# grey printer, and the ink of labels stays readable on every step.
+BAND_COLOURS: Final = (
+    Style(light="#fbf8ea", dark="#16232b", dash=()),
+    Style(light="#eff3df", dark="#182b34", dash=()),
+    Style(light="#e1edd6", dark="#1a333d", dash=()),
+    Style(light="#d1e6d0", dark="#1c3c46", dash=()),
+    Style(light="#c0deca", dark="#1f454e", dash=()),
+    Style(light="#aed5c6", dark="#234f56", dash=()),
+    Style(light="#9dcbc3", dark="#28595d", dash=()),
+    Style(light="#8dc1c1", dark="#2e6363", dash=()),
+    Style(light="#80b6bf", dark="#356e68", dash=()),
+    Style(light="#76aabc", dark="#3e796c", dash=()),
+)
+
+SURFACES: Final = (
+    Surface(name="figure-surface", light="#ffffff", dark="#12181c"),
+    Surface(name="figure-ink", light="#1b2328", dark="#e4eaed"),
+    Surface(name="figure-frame", light="#66727a", dark="#8d9aa2"),
+    Surface(name="figure-mark", light="#3a444b", dark="#c3ccd2"),
+)
+
+FONT: Final = "system-ui, -apple-system, 'Segoe UI', Roboto, 'Noto Sans', sans-serif"
+
+
+def stylesheet() -> str:
+    """Return the CSS that static figures and their legends need, custom properties first."""
+    light = _properties([(each.name, each.light) for each in SURFACES], "light")
+    dark = _properties([(each.name, each.dark) for each in SURFACES], "dark")
+    series = [_series_rules(index, style.dash) for index, style in enumerate(STYLES)]
+    bands = [
+        f"svg.figure .m{index}{{fill:var(--m{index})}}\n"
+        f".band-swatch.m{index}{{background:var(--m{index})}}"
+        for index in range(len(BAND_COLOURS))
+    ]
+    # "screen": a page printed from a dark screen is still ink on white paper.
+    screens = f"@media screen and (prefers-color-scheme:dark){{:root{{{dark}}}}}"
+    return "\n".join([f":root{{{light}}}", screens, *RULES, *series, *bands]) + "\n"
+
+
+def _properties(surfaces: Sequence[tuple[str, str]], page: str) -> str:
+    def colour(style: Style) -> str:
+        return style.light if page == "light" else style.dark
+
+    series = [(f"s{index}", colour(style)) for index, style in enumerate(STYLES)]
+    bands = [(f"m{index}", colour(style)) for index, style in enumerate(BAND_COLOURS)]
+    return "".join(f"--{name}:{value};" for name, value in [*surfaces, *series, *bands])
+
+
+def _series_rules(index: int, dash: tuple[int, ...]) -> str:
+    pattern = " ".join(str(length) for length in dash)
+    dashes = f";stroke-dasharray:{pattern}" if dash else ""
+    return (
+        f"svg.figure .s{index}{{stroke:var(--s{index}){dashes}}}\n"
+        f"svg.figure .t{index}{{fill:var(--s{index})}}"
+    )
+
+
+RULES: Final = (
+    "svg.figure{display:block;width:100%;height:auto;color:var(--figure-ink)}",
+    f"svg.figure{{background:var(--figure-surface);font:14px {FONT};print-color-adjust:exact}}",
+    "svg.figure text{fill:currentColor}",
+    "svg.figure .n{text-anchor:end}",
+    "svg.figure .c{text-anchor:middle}",
+    "svg.figure .halo{paint-order:stroke;stroke:var(--figure-surface)}",
+    "svg.figure .halo{stroke-width:4px;stroke-linejoin:round}",
+    "svg.figure .name{font-weight:600}",
+    "svg.figure path{fill-rule:evenodd}",
+    "svg.figure .frame{fill:none;stroke:var(--figure-frame);stroke-width:1}",
+    "svg.figure .line{fill:none;stroke-width:2.2;stroke-linejoin:round}",
+    "svg.figure .mark{fill:none;stroke:var(--figure-mark);stroke-width:1}",
+    "svg.figure .limit{fill:none;stroke:var(--figure-mark);stroke-width:2.4}",
+    "svg.figure .iso{fill:none;stroke:var(--figure-frame);stroke-width:.8}",
+    "svg.figure.swatch{display:inline-block;width:34px;height:10px;background:none}",
+    ".band-swatch{display:inline-block;width:22px;height:12px;print-color-adjust:exact}",
+    # Bokeh hangs its read-outs on the page's body, where these reach them.
+    ".bk-Tooltip{--background-color:var(--figure-surface);--color:var(--figure-ink)}",
+    ".bk-Tooltip{--divider-color:var(--figure-frame);--bokeh-font-size:14px}",
+    ".bk-Tooltip{--tooltip-arrow-color:var(--figure-frame)}",
+    ".bk-Tooltip{--tooltip-arrow-inner-color:var(--figure-frame)}",
+    ".band-swatch{border:1px solid var(--figure-frame)}",
+)

@@ -1,0 +1,142 @@
+"""Figures as static SVG text: first sight, print, and the small pictures of the index.
+
+The page redraws these pictures in JavaScript while numbers move, and gets the same characters. So
+coordinates are written by one rule (tenths of a px, halves up), and only arithmetic is used that
+every machine does alike. Colours and text styles come from figure_styles.stylesheet().
+"""
+
+from collections.abc import Sequence
+
+from bufferfolio.figure_layout import (
+    FRAME,
+    TALL,
+    WIDTH,
+    Word,
+    across,
+    lines_layout,
+    map_layout,
+    mark_position,
+    series_paths,
+)
+from bufferfolio.figure_styles import STYLES
+from bufferfolio.figure_ticks import fixed, ticks
+from bufferfolio.figures import Cells, Figure, Series, bands, rounded
+from bufferfolio.line_paths import Box, Path, Point
+
+SMALL_WIDTH, SMALL_TALL = 160, 100
+SMALL_FRAME = Box(4.0, 4.0, 156.0, 96.0)
+BASELINE = 10.5  # px from a text box's top to the text's baseline
+
+
+def svg(figure: Figure) -> str:
+    """Return the figure as an SVG element."""
+    figure = rounded(figure)
+    words = f"{figure.title}. {figure.summary}"
+    inside = _lines(figure) if figure.cells is None else _map(figure, figure.cells)
+    return (
+        f'<svg class="figure" viewBox="0 0 {WIDTH} {TALL}" role="img" '
+        f'aria-label="{escaped(words)}">{inside}{_axes(figure)}</svg>'
+    )
+
+
+def thumbnail(figure: Figure) -> str:
+    """Return the lines of a figure as a small SVG element without any words inside."""
+    figure = rounded(figure)
+    drawn = "".join(
+        _series(series, series_paths(figure, series, SMALL_FRAME))
+        for series in figure.series
+        if series.visible
+    )
+    return (
+        f'<svg class="figure" viewBox="0 0 {SMALL_WIDTH} {SMALL_TALL}" role="img" '
+        f'aria-label="{escaped(figure.title)}">{drawn}{_frame(SMALL_FRAME)}</svg>'
+    )
+
+
+def _lines(figure: Figure) -> str:
+    inside = lines_layout(figure)
+    visible = [each for each in figure.series if each.visible]
+    drawn = [_series(each, paths) for each, paths in zip(visible, inside.paths, strict=True)]
+    return _marks(figure) + "".join(drawn) + _words(inside.words)
+
+
+def _map(figure: Figure, cells: Cells) -> str:
+    inside = map_layout(figure, cells)
+    filled = [
+        _path(f"m{band.colour}", "".join(path_text(each) + "Z" for each in region))
+        for band, region in zip(bands(figure), inside.regions, strict=True)
+    ]
+    between = _path("iso", "".join(path_text(each) for each in inside.between))
+    limits = _path("limit", "".join(path_text(each) for each in inside.limits))
+    return "".join(filled) + between + limits + _marks(figure) + _words(inside.words)
+
+
+def _series(series: Series, paths: Sequence[Path]) -> str:
+    drawn = "".join(path_text(each) for each in paths)
+    return _path(f"line s{series.style % len(STYLES)}", drawn)
+
+
+def _marks(figure: Figure) -> str:
+    drawn = ""
+    for mark in figure.marks:
+        at = mark_position(figure, mark)
+        if at is not None and mark.axis == "x":
+            drawn += f"M{tenths(at)} {tenths(FRAME.top)}V{tenths(FRAME.bottom)}"
+        elif at is not None:
+            drawn += f"M{tenths(FRAME.left)} {tenths(at)}H{tenths(FRAME.right)}"
+    return _path("mark", drawn)
+
+
+def _words(words: Sequence[Word]) -> str:
+    return "".join(
+        _text(each.box.left, each.box.top + BASELINE, each.classes, each.text) for each in words
+    )
+
+
+def _axes(figure: Figure) -> str:
+    drawn = ""
+    words = []
+    for each in ticks(figure.x.low, figure.x.high, figure.x.scale, 9):
+        at = across(figure.x, each.value, FRAME.left, FRAME.right)
+        drawn += f"M{tenths(at)} {tenths(FRAME.bottom)}v-5"
+        words.append(_text(at, FRAME.bottom + 17, "c", each.text))
+    for each in ticks(figure.y.low, figure.y.high, figure.y.scale, 7):
+        at = across(figure.y, each.value, FRAME.bottom, FRAME.top)
+        drawn += f"M{tenths(FRAME.left)} {tenths(at)}h5"
+        words.append(_text(FRAME.left - 6, at + 5, "n", each.text))
+    words.append(_text(FRAME.right, TALL - 10.0, "n", figure.x.title))
+    words.append(_text(8.0, 18.0, "", figure.y.title))
+    return _frame(FRAME) + _path("frame", drawn) + "".join(words)
+
+
+def _frame(frame: Box) -> str:
+    left, right = tenths(frame.left), tenths(frame.right)
+    top, bottom = tenths(frame.top), tenths(frame.bottom)
+    return _path("frame", f"M{left} {top}H{right}V{bottom}H{left}Z")
+
+
+def _path(classes: str, drawn: str) -> str:
+    return f'<path class="{classes}" d="{drawn}"/>' if drawn else ""
+
+
+def _text(x: float, y: float, classes: str, text: str) -> str:
+    named = f' class="{classes}"' if classes else ""
+    return f'<text x="{tenths(x)}" y="{tenths(y)}"{named}>{escaped(text)}</text>'
+
+
+def path_text(path: Sequence[Point]) -> str:
+    """Return the path data of a line."""
+    return "M" + "L".join(f"{tenths(x)} {tenths(y)}" for x, y in path)
+
+
+def tenths(value: float) -> str:
+    """Write px in tenths, without a tail of zero."""
+    text = fixed(value, 1).replace("−", "-")
+    return text[:-2] if text.endswith(".0") else text
+
+
+def escaped(text: str) -> str:
+    """Return text as it may stand in markup and in quoted attributes."""
+    return (
+        text.replace("&", "&amp;").replace("<", "&lt;").replace(">", "&gt;").replace('"', "&quot;")
+    )
