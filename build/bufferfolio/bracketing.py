@@ -76,18 +76,21 @@ def balance_charge(problem: Problem, u: FloatArray, x: FloatArray) -> FloatArray
     Source: Newton's method inside a bracket that every evaluation narrows.
     """
     low, high = np.full_like(x, LOW_X), np.full_like(x, HIGH_X)
+    last = high - low
     for _ in range(80):
         state = residuals(problem, x, u)
         low = np.where(state.charge < 0.0, np.maximum(low, x), low)
         high = np.where(state.charge > 0.0, np.minimum(high, x), high)
-        target = x - state.charge / state.charge_x
-        # At the root the bracket's end is the root itself: a step of nothing is still inside.
-        resting = np.abs(target - x) < 1e-13 * (1.0 + np.abs(x))
-        inside = ((target > low) & (target < high)) | resting
-        following = np.where(inside, target, 0.5 * (low + high))
+        step = -state.charge / state.charge_x
+        target = x + step
+        # Steps have to halve, or two points could take turns for ever.
+        good = (target > low) & (target < high) & (np.abs(step) < 0.5 * last)
+        # At the root the bracket's end is the root itself: a step of nothing is good too.
+        good |= np.abs(step) < 1e-13 * (1.0 + np.abs(x))
+        following = np.where(good, target, 0.5 * (low + high))
         following = np.where(state.charge == 0.0, x, following)
-        done = np.abs(following - x) < 1e-13 * (1.0 + np.abs(x))
+        last = np.abs(following - x)
         x = following
-        if done.all():
+        if (last < 1e-13 * (1.0 + np.abs(x))).all():
             break
     return x

@@ -143,6 +143,7 @@ def _strength(problem: Problem, x: FloatArray) -> FloatArray:
     low, high = np.full_like(x, LOW_U), np.full_like(x, HIGH_U)
     guess = 0.5 * (problem.strength + np.abs(problem.net)) + problem.totals.sum(axis=0) + 1e-7
     u: FloatArray = np.log(guess)
+    last = high - low
     for _ in range(ROUNDS):
         there = sums(problem, x, u)
         charge = there.plus - there.minus
@@ -152,14 +153,16 @@ def _strength(problem: Problem, x: FloatArray) -> FloatArray:
         )
         low = np.where(excess < 0.0, u, low)
         high = np.where(excess > 0.0, u, high)
-        target = u - excess / slope
-        # At the root the bracket's end is the root itself: a step of nothing is still inside.
-        inside = ((target > low) & (target < high)) | (np.abs(target - u) < SETTLED)
-        following = np.where(inside, target, 0.5 * (low + high))
+        step = -excess / slope
+        target = u + step
+        # As in `bracketing.balance_charge`.
+        good = (target > low) & (target < high) & (np.abs(step) < 0.5 * last)
+        good |= np.abs(step) < SETTLED
+        following = np.where(good, target, 0.5 * (low + high))
         following = np.where(excess == 0.0, u, following)
-        done = bool(np.all(np.abs(following - u) < SETTLED))
+        last = np.abs(following - u)
         u = following
-        if done:
+        if (last < SETTLED).all():
             break
     return u
 

@@ -4,6 +4,7 @@
 """
 
 import math
+import re
 from collections.abc import Callable, Mapping
 from decimal import ROUND_HALF_UP, Decimal
 from typing import Final
@@ -71,6 +72,16 @@ def volume(cubic_metres: float) -> str:
     return f"{plain(cubic_metres * 1e9)} µL"
 
 
+def chemical(name: str) -> str:
+    """Write a plain formula or ion as chemists print it: Na2HPO4·7H2O, SO4-2, NH4+."""
+    found = CHARGED.fullmatch(name)
+    if found is None:
+        return name
+    body, sign, size = found.groups()
+    lowered = LOWERED.sub(lambda digits: digits.group().translate(SUBSCRIPTS), body)
+    return lowered + f"{size if size and size != '1' else ''}{sign or ''}".translate(SUPERSCRIPTS)
+
+
 def _rounded(value: float, figures: int) -> tuple[str, int]:
     """Return the significant digits and the power of ten of the first."""
     if not math.isfinite(value) or value == 0.0:
@@ -100,6 +111,11 @@ def _written(value: float, digits: str, exponent: int, figures: int) -> str:
     return f"{sign}{before}.{after}" if after else f"{sign}{before}"
 
 
+CHARGED: Final = re.compile(r"([^+\-]+)(?:([+-])([1-9]?))?")
+LOWERED: Final = re.compile(r"(?<=[A-Za-z)\]])[0-9]+")  # a number after an atom or a group
+SUBSCRIPTS: Final = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
+SUPERSCRIPTS: Final = str.maketrans("0123456789+-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻")
+
 FILTERS: Final[Mapping[str, Callable[..., str]]] = {
     "fixed": fixed,
     "signed": signed,
@@ -109,4 +125,5 @@ FILTERS: Final[Mapping[str, Callable[..., str]]] = {
     "celsius": celsius,
     "mass": mass,
     "volume": volume,
+    "chemical": chemical,
 }
