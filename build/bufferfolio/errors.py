@@ -54,13 +54,13 @@ def render(error: DefinitionError) -> str:
 
 
 def _excerpt(line: str, column: int) -> tuple[int, str]:
+    start = max(0, column - 1 - LINE_WIDTH // 2) if len(line) > LINE_WIDTH else 0
+    cut = line[start : start + LINE_WIDTH]
     # Characters that would move the caret or the terminal's cursor become blanks.
-    clean = "".join(letter if letter.isprintable() else " " for letter in line)
-    start = max(0, column - 1 - LINE_WIDTH // 2) if len(clean) > LINE_WIDTH else 0
-    cut = clean[start : start + LINE_WIDTH]
+    clean = "".join(letter if letter.isprintable() else " " for letter in cut)
     left = "…" if start else ""
-    right = "…" if start + LINE_WIDTH < len(clean) else ""
-    return column - 1 - start + len(left), left + cut + right
+    right = "…" if start + LINE_WIDTH < len(line) else ""
+    return column - 1 - start + len(left), left + clean + right
 
 
 class OutOfRange(BufferfolioError):

@@ -47,13 +47,13 @@ BAND_COLOURS: Final = (
     Style(light="#fbf8ea", dark="#16232b", dash=()),
     Style(light="#eff3df", dark="#182b34", dash=()),
     Style(light="#e1edd6", dark="#1a333d", dash=()),
-    Style(light="#d1e6d0", dark="#1c3c46", dash=()),
-    Style(light="#c0deca", dark="#1f454e", dash=()),
-    Style(light="#aed5c6", dark="#234f56", dash=()),
-    Style(light="#9dcbc3", dark="#28595d", dash=()),
-    Style(light="#8dc1c1", dark="#2e6363", dash=()),
-    Style(light="#80b6bf", dark="#356e68", dash=()),
-    Style(light="#76aabc", dark="#3e796c", dash=()),
+    Style(light="#d1e6d0", dark="#1c3b45", dash=()),
+    Style(light="#c0deca", dark="#1f434c", dash=()),
+    Style(light="#aed5c6", dark="#234c53", dash=()),
+    Style(light="#9dcbc3", dark="#28555a", dash=()),
+    Style(light="#8dc1c1", dark="#2e5e60", dash=()),
+    Style(light="#80b6bf", dark="#356764", dash=()),
+    Style(light="#76aabc", dark="#3e7068", dash=()),
 )
 
 SURFACES: Final = (

@@ -67,8 +67,11 @@ def step_of(span: float, about: int) -> tuple[int, int]:
 
 
 def ticks(low: float, high: float, scale: Scale, about: int) -> tuple[Tick, ...]:
-    """Return the round numbers from `low` to `high`, `about` of them at most (one more at ends)."""
-    if scale == "log":
+    """Return the round numbers from `low` to `high`, `about` of them and one more at most.
+
+    A logarithmic axis too short for decades gets them too: they are not evenly spaced there.
+    """
+    if scale == "log" and high >= 5.0 * low:
         return log_ticks(low, high, about)
     mantissa, exponent = step_of(high - low, about)
     step = shifted(mantissa, exponent)

@@ -10,12 +10,10 @@ from dataclasses import dataclass, replace
 from typing import Literal
 
 import numpy as np
-import numpy.typing as npt
 
 from bufferfolio.figure_styles import BAND_COLOURS, STYLES
 from bufferfolio.figure_ticks import Scale, number_text, shifted, step_of
-
-FloatArray = npt.NDArray[np.float64]
+from bufferfolio.water import FloatArray
 
 SIGNIFICANT_DIGITS = 6  # finer than a pixel on any axis, and half the bytes of a float's digits
 BANDS_ABOUT = 8  # steps of colour that an eye can still name
@@ -224,7 +222,9 @@ def _plain(numbers: Iterable[float]) -> list[float | None]:
 
 
 def _significant(number: float) -> float:
-    return float(f"{number:.{SIGNIFICANT_DIGITS}g}")
+    # Off by a hair from where halves lie, so that the page's engine, whose last bit may differ,
+    # rounds every number the same way.
+    return float(f"{number * (1.0 + 1e-11):.{SIGNIFICANT_DIGITS}g}")
 
 
 def _significant_array(numbers: FloatArray) -> FloatArray:

@@ -46,6 +46,16 @@ def percent(fraction: float) -> str:
     return f"{significant(100.0 * fraction, 3)} %" if math.isfinite(fraction) else NOTHING
 
 
+def milli(value: float) -> str:
+    """Write an amount in mol as mmol, three significant figures."""
+    return significant(1000.0 * value, 3)
+
+
+def sentence(words: str) -> str:
+    """Write words as the start of a sentence."""
+    return words[:1].upper() + words[1:]
+
+
 def celsius(temperature: float) -> str:
     """Write a temperature (K) as a number of degrees Celsius, to a hundredth at most."""
     text = fixed(temperature - ZERO_CELSIUS, 2)
@@ -122,6 +132,8 @@ FILTERS: Final[Mapping[str, Callable[..., str]]] = {
     "significant": significant,
     "plain": plain,
     "percent": percent,
+    "milli": milli,
+    "sentence": sentence,
     "celsius": celsius,
     "mass": mass,
     "volume": volume,

@@ -109,12 +109,13 @@ folder to take them elsewhere. contents.txt lists every file with its SHA-256, s
 
 run in this folder proves that a copy is whole.
 
-Do not change files here: the next build replaces them all. The formulations are written as YAML in
-systems/, and
+Do not change or add files here: the next build replaces the folder. The formulations are written as
+YAML in systems/, and either of
 
-    python3 build/make_site.py
+    python3 build/make_site.py      in the project's folder
+    bufferfolio build               where bufferfolio is installed
 
-in the project's folder builds this folder again.
+builds the pages again.
 """
 
 # What desktops leave in folders that people look into; losing them harms nobody.

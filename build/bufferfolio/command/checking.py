@@ -4,6 +4,7 @@ from collections import Counter
 
 from bufferfolio import resources
 from bufferfolio.command.arguments import Arguments, ExitCode, chosen_systems
+from bufferfolio.command.console import counted
 from bufferfolio.errors import DefinitionErrors
 from bufferfolio.reading import read_library
 from bufferfolio.reading.files import definition_files, shown
@@ -29,8 +30,3 @@ def print_files(files: list[str], wrong: Counter[str]) -> None:
     """Print one line a file: fine, or how much is wrong with it."""
     for file in files:
         print(f"{file}: {counted(wrong[file], 'error') if wrong[file] else 'ok'}")
-
-
-def counted(number: int, noun: str) -> str:
-    """Return a number with its noun in the right form."""
-    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"

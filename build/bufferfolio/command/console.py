@@ -2,18 +2,11 @@
 
 import io
 import sys
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
-from typing import Protocol
+from typing import Final
 
 from tqdm import tqdm
-
-
-class Progress(Protocol):
-    """Called before each piece of work: how many are done, of how many, and which comes now."""
-
-    def __call__(self, done: int, total: int, name: str) -> None:
-        """Show where the work stands."""
 
 
 def speak_utf8() -> None:
@@ -24,23 +17,28 @@ def speak_utf8() -> None:
 
 
 @contextmanager
-def progress() -> Iterator[Progress]:
-    """Yield a progress display: a bar on a terminal, plain lines elsewhere; both on stderr."""
+def progress(total: int) -> Iterator[Callable[[str], None]]:
+    """Yield what to call before each piece of work: a bar on a terminal, plain lines elsewhere."""
     if not sys.stderr.isatty():
-        yield _print_line
+        yield lambda name: print(name, file=sys.stderr, flush=True)
         return
-    with tqdm(file=sys.stderr, leave=False, unit="page", dynamic_ncols=True) as bar:
+    with tqdm(total=total, file=sys.stderr, leave=False, dynamic_ncols=True) as bar:
+        begun = 0
 
-        def advance(done: int, total: int, name: str) -> None:
-            bar.total = total
-            bar.set_postfix_str(name, refresh=False)
-            bar.update(done - bar.n)
+        def advance(name: str) -> None:
+            # What is named is only begun: the piece before it is done.
+            nonlocal begun
+            bar.set_description_str(name[:NAME_WIDTH].ljust(NAME_WIDTH), refresh=False)
+            bar.update(min(begun, 1))
+            begun += 1
 
         yield advance
+        bar.update(min(begun, 1))
 
 
-def _print_line(done: int, total: int, name: str) -> None:
-    print(f"{done + 1}/{total} {name}", file=sys.stderr, flush=True)
+def counted(number: int, noun: str) -> str:
+    """Return a number with its noun in the right form."""
+    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"
 
 
 def table(head: Sequence[str], rows: Sequence[Sequence[str]], right: frozenset[int]) -> str:
@@ -55,3 +53,6 @@ def table(head: Sequence[str], rows: Sequence[Sequence[str]], right: frozenset[i
         return "  ".join(cells).rstrip()
 
     return "\n".join([line(head), *(line(row) for row in rows)])
+
+
+NAME_WIDTH: Final = 32  # so that the bar stands still

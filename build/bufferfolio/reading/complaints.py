@@ -23,16 +23,30 @@ def validate(document: Document, model: type[Model]) -> Model:
         result = model.model_validate(document.root.data())
     except ValidationError as problem:
         found = problem.errors(include_url=False)
-        misspelt = _misspelt(model, found)
+        misspelt = _misspelt(model, found[:MOST])
         errors += [
             _translated(document, model, details)
-            for details in found
+            for details in found[:MOST]
             if details["type"] != "missing" or details["loc"] not in misspelt
         ]
+        errors = _shortened(document, errors, len(found[MOST:]))
         raise DefinitionErrors(errors) from None
     if errors:
-        raise DefinitionErrors(errors)
+        raise DefinitionErrors(_shortened(document, errors, 0))
     return result
+
+
+def _shortened(
+    document: Document, errors: list[DefinitionError], more: int
+) -> list[DefinitionError]:
+    """Return the first errors, and how many there are beside them."""
+    more += len(errors[MOST:])
+    if more:
+        place = document.root.place
+        problem = f"{more} more errors in this file are not shown"
+        last = DefinitionError(place, problem, accepted="a file of the kind that belongs here")
+        return [*errors[:MOST], last]
+    return errors
 
 
 def _translated(
@@ -179,6 +193,7 @@ def _shape_at(model: type[BaseModel], location: Location) -> dict[str, str]:
     }
 
 
+MOST: Final = 100  # errors of one file that are shown
 NUMBER_END: Final = re.compile(r"[0-9]+( .*)?")
 Words = Callable[[ErrorDetails, type[BaseModel], Location], tuple[str, str]]
 

@@ -8,8 +8,9 @@ from typing import Annotated, Any, Literal
 from pydantic import BaseModel, ConfigDict, Field, RootModel
 
 from bufferfolio.definitions import HowKnown, ModelName
-from bufferfolio.reading import fields
-from bufferfolio.reading.fields import Key, Number, Positive, Text
+from bufferfolio.reading import fields, measures
+from bufferfolio.reading.fields import Key, Text
+from bufferfolio.reading.measures import Number, Positive
 
 _SOURCE = "Key of the work in sources.yaml."
 _WHERE = "Where in that work the number stands: table, page, equation."
@@ -52,7 +53,7 @@ class InteractionShape(Cited):
 
     cation: Text = Field(description="The positive ion, such as Na+.")
     anion: Text = Field(description="The negative ion, such as Cl-.")
-    epsilon: fields.Epsilon = Field(description="The coefficient at 25 °C, in kg/mol.")
+    epsilon: measures.Epsilon = Field(description="The coefficient at 25 °C, in kg/mol.")
 
 
 class InteractionsShape(RootModel[list[InteractionShape]]):
@@ -62,21 +63,21 @@ class InteractionsShape(RootModel[list[InteractionShape]]):
 class PKShape(Cited):
     """The pK of one step at one temperature, at zero ionic strength."""
 
-    value: fields.PKValue = Field(description="The pK; molal standard state.")
-    at: fields.Temperature = Field(description="The temperature where it holds.")
-    uncertainty: fields.Uncertainty = Field(description="Standard uncertainty, or `not stated`.")
+    value: measures.PKValue = Field(description="The pK; molal standard state.")
+    at: measures.Temperature = Field(description="The temperature where it holds.")
+    uncertainty: measures.Uncertainty = Field(description="Standard uncertainty, or `not stated`.")
 
 
 class EnthalpyShape(Cited):
     """The enthalpy of losing the proton."""
 
-    value: fields.Enthalpy = Field(description="The enthalpy, such as -0.41 kJ/mol.")
+    value: measures.Enthalpy = Field(description="The enthalpy, such as -0.41 kJ/mol.")
 
 
 class HeatCapacityShape(Cited):
     """The change of heat capacity on losing the proton."""
 
-    value: fields.HeatCapacity = Field(description="The change, such as -142 J/(mol K).")
+    value: measures.HeatCapacity = Field(description="The change, such as -142 J/(mol K).")
 
 
 class TermsShape(Shape):
@@ -96,7 +97,7 @@ class EquationShape(Cited):
     name: Text = Field(description="What the equation is called on a page.")
     gives: Literal["pK", "log10 K", "ln K"] = Field(description="What the equation gives.")
     terms: TermsShape = Field(description="Its coefficients; a term that is left out is zero.")
-    uncertainty: fields.Uncertainty = Field(
+    uncertainty: measures.Uncertainty = Field(
         description="Standard uncertainty of the pK, or `not stated`."
     )
 
@@ -118,7 +119,7 @@ class StepShape(Shape):
     equation: EquationShape | None = Field(
         None, description="A published equation, in place of the other three."
     )
-    valid: fields.TemperatureRange = Field(
+    valid: measures.TemperatureRange = Field(
         description="The temperatures the source vouches for: [lowest, highest]."
     )
     alternative: Text | None = Field(
@@ -144,9 +145,9 @@ class FamilyShape(Shape):
 class StockShape(Shape):
     """What makes a reagent a liquid."""
 
-    concentration: fields.Strength = Field(description="% by mass, or mol/L.")
-    density: fields.Density = Field(description="Density of the liquid, such as 1.184 g/mL.")
-    at: fields.Temperature = Field(description="The temperature where the density holds.")
+    concentration: measures.Strength = Field(description="% by mass, or mol/L.")
+    density: measures.Density = Field(description="Density of the liquid, such as 1.184 g/mL.")
+    at: measures.Temperature = Field(description="The temperature where the density holds.")
 
 
 class ReagentShape(Cited):
@@ -162,7 +163,7 @@ class ReagentShape(Cited):
     accompanied_by: dict[Key, Positive] = Field(
         {}, description="Mol of other reagents that come along per mol, in technical liquids."
     )
-    purity: fields.Share | None = Field(
+    purity: measures.Share | None = Field(
         None, description="Mass of the formula per mass of the solid, in %. Not for liquids."
     )
     stock: StockShape | None = Field(None, description="For a liquid: how strong, how dense.")
@@ -179,31 +180,31 @@ class PortionShape(Shape):
     """An amount of one reagent."""
 
     reagent: Key = Field(description="Key of the reagent: its file name without .yaml.")
-    amount: fields.Amount = Field(description="How much, with any of the accepted units.")
+    amount: measures.Amount = Field(description="How much, with any of the accepted units.")
 
 
 class MakeUpShape(Shape):
     """How the formulation is put together: `made_up_to` or `water`, not both."""
 
-    made_up_to: fields.Volume | None = Field(None, description="Volume of the solution.")
-    water: fields.VolumeOrMass | None = Field(None, description="Water that is added.")
-    at: fields.WaterTemperature = Field(description="Temperature at which volumes are measured.")
+    made_up_to: measures.Volume | None = Field(None, description="Volume of the solution.")
+    water: measures.VolumeOrMass | None = Field(None, description="Water that is added.")
+    at: measures.WaterTemperature = Field(description="Temperature at which volumes are measured.")
     reagents: list[PortionShape] = Field(description="What goes in; [] for plain water.")
 
 
 class ExpectedShape(Shape):
     """The pH the formulation is meant to have."""
 
-    pH: fields.PHValue = Field(description="The pH that is expected.")
-    at: fields.WaterTemperature = Field(description="The temperature where it is expected.")
+    pH: measures.PHValue = Field(description="The pH that is expected.")
+    at: measures.WaterTemperature = Field(description="The temperature where it is expected.")
     tolerance: Positive = Field(description="How far off, in pH, is still accepted.")
 
 
 class UseShape(Shape):
     """The limits of use."""
 
-    temperature: fields.WaterTemperatureRange = Field(description="[lowest, highest].")
-    pH: fields.PHRange = Field(description="[lowest, highest].")
+    temperature: measures.WaterTemperatureRange = Field(description="[lowest, highest].")
+    pH: measures.PHRange = Field(description="[lowest, highest].")
 
 
 class TitrantShape(Shape):
@@ -213,7 +214,7 @@ class TitrantShape(Shape):
 
     reagent: Key = Field(description="Key of the reagent.")
     direction: Literal["upward", "downward"] = Field(description="Where it moves the pH.")
-    diluted: fields.Molarity | None = Field(
+    diluted: measures.Molarity | None = Field(
         None, alias="as", description="Strength of the working solution; without it, undiluted."
     )
 
@@ -228,7 +229,7 @@ class FormulationShape(Shape):
     model: ModelName = Field(description="The activity model.")
     make_up: MakeUpShape = Field(description="How it is put together.")
     expected: ExpectedShape | None = Field(None, description="The pH it is meant to have.")
-    use: UseShape = Field(description="The limits of use.")
+    use: UseShape = Field(description="The temperatures and the pH within which it may be used.")
     correct_with: list[TitrantShape] = Field([], description="What corrects a batch.")
     cautions: list[Text] = Field([], description="What the people who use it must know.")
     explains: list[fields.Danger] = Field(

@@ -149,8 +149,10 @@ class _Builder:
     def text(self, event: yaml.ScalarEvent, place: Place) -> str:
         if event.style:
             return Quoted(event.value)
-        before = self.lines[place.line - 1][: place.column - 1]
-        return Glued(event.value) if GLUED.search(before) else str(event.value)
+        if place.column <= 2 or place.line > len(self.lines):
+            return str(event.value)
+        before = self.lines[place.line - 1][place.column - 3 : place.column - 1]
+        return Glued(event.value) if GLUED.fullmatch(before) else str(event.value)
 
     def scalar(self, node: Node) -> None:
         if self.open and isinstance(self.open[-1][0].content, dict) and self.open[-1][1] is None:
@@ -234,7 +236,7 @@ NO_ALIASES: Final = "each value written out where it belongs"
 LOADER: Final = getattr(yaml, "CSafeLoader", yaml.SafeLoader)  # the C parser where PyYAML has it
 LINE_BREAK: Final = re.compile("\r\n|[\n\r\x85\u2028\u2029]")  # what YAML 1.1 counts as one
 INDENTING_TAB: Final = re.compile(r" *\t")
-GLUED: Final = re.compile(r"[^,\s],$")  # text that ends in a comma without a blank
+GLUED: Final = re.compile(r"[^,\s],")  # what stands before it then
 UNPRINTABLE: Final = re.compile(
     "[^\x09\x20-\x7e\x85\xa0-\ud7ff\ue000-\ufefe\uff00-\ufffd\U00010000-\U0010ffff]"
 )

@@ -1,0 +1,136 @@
+"""The make-up of a formulation as its sheet shows it: batch, amounts and hazard statements."""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import Final
+
+from bufferfolio.composition import moles
+from bufferfolio.definitions import Formulation, MakeUp, Portion, Reagent
+from bufferfolio.formatting import chemical, mass, plain, volume
+from bufferfolio.hazards import statement
+from bufferfolio.page_parts import Cited, cited
+from bufferfolio.subjects import Subject
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PortionRow:
+    """One line of the make-up table."""
+
+    reagent: Reagent
+    formula: str
+    grade: str  # purity, or concentration and density; "" for a pure solid
+    stated: str
+    amount: str  # in g or mL, for the recipe's own batch
+    source: Cited
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Unit:
+    """A unit in which a batch may be given."""
+
+    value: str
+    label: str
+    factor: float  # to m³ or kg
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Batch:
+    """How much the recipe makes, as the batch field starts with it."""
+
+    quantity: str  # "volume" or "mass"
+    amount: float  # m³, or kg of water
+    basis: str  # "made up to" or "water added"
+    typed: str
+    unit: Unit
+    units: tuple[Unit, ...]
+    text: str  # with its unit
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class HazardRow:
+    """A hazard statement and who carries it."""
+
+    code: str
+    words: str
+    reagents: tuple[str, ...]
+
+
+def batch_of(make_up: MakeUp) -> Batch:
+    """Return how much a recipe makes, in the unit that reads best."""
+    if make_up.mass is not None:
+        amount, units, quantity = make_up.mass, MASS_UNITS, "mass"
+        text = mass(amount)
+    else:
+        amount, units, quantity = make_up.volume or 0.0, VOLUME_UNITS, "volume"
+        text = volume(amount)
+    fitting = [unit for unit in units if unit.factor <= amount]
+    unit = fitting[-1] if fitting else units[0]
+    return Batch(
+        quantity=quantity,
+        amount=amount,
+        basis=make_up.basis,
+        typed=plain(amount / unit.factor, 6),
+        unit=unit,
+        units=units,
+        text=text,
+    )
+
+
+def portion_rows(subject: Subject, numbers: Mapping[str, int]) -> tuple[PortionRow, ...]:
+    """Return the make-up table, weighed or measured for the recipe's own batch."""
+    return tuple(
+        PortionRow(
+            reagent=portion.reagent,
+            formula=chemical(portion.reagent.formula),
+            grade=_grade(portion.reagent),
+            stated=portion.stated,
+            amount=_amount(portion, subject.water),
+            source=cited(portion.reagent.citation, "reagent", numbers),
+        )
+        for portion in subject.formulation.make_up.portions
+    )
+
+
+def _grade(reagent: Reagent) -> str:
+    stock = reagent.stock
+    if stock is not None:
+        return f"{plain(100.0 * stock.mass_fraction, 3)} % by mass, {plain(stock.density / 1000.0)} g/mL"
+    return f"{plain(100.0 * reagent.purity)} % pure" if reagent.purity < 1.0 else ""
+
+
+def _amount(portion: Portion, water: float) -> str:
+    reagent = portion.reagent
+    share = reagent.stock.mass_fraction if reagent.stock else reagent.purity
+    kilograms = moles(portion, water) * reagent.molar_mass / share
+    return volume(kilograms / reagent.stock.density) if reagent.stock else mass(kilograms)
+
+
+def reagents_of(formulation: Formulation) -> tuple[Reagent, ...]:
+    """Return the reagents of make-up and titrants, each once, in the order of use."""
+    used = [portion.reagent for portion in formulation.make_up.portions]
+    used += [titrant.reagent for titrant in formulation.titrants]
+    return tuple({reagent.key: reagent for reagent in used}.values())
+
+
+def hazard_rows(reagents: Sequence[Reagent]) -> tuple[HazardRow, ...]:
+    """Return every hazard statement of some reagents, spelled out."""
+    codes = sorted({code for reagent in reagents for code in reagent.hazards})
+    return tuple(
+        HazardRow(
+            code=code,
+            words=statement(code),
+            reagents=tuple(item.label for item in reagents if code in item.hazards),
+        )
+        for code in codes
+    )
+
+
+VOLUME_UNITS: Final = (
+    Unit(value="mL", label="mL", factor=1e-6),
+    Unit(value="L", label="L", factor=1e-3),
+    Unit(value="m3", label="m³", factor=1.0),
+)
+MASS_UNITS: Final = (
+    Unit(value="g", label="g", factor=1e-3),
+    Unit(value="kg", label="kg", factor=1.0),
+)

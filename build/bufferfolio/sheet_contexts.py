@@ -1,0 +1,295 @@
+"""What the template of a formulation's sheet is given: numbers and words, nothing left to compute."""
+
+import hashlib
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+from typing import Final
+
+import numpy as np
+from markupsafe import Markup
+
+from bufferfolio.activity import MODELS, ActivityModel
+from bufferfolio.composition import pure_water
+from bufferfolio.definitions import Family, Formulation, Reagent
+from bufferfolio.engine_data import sheet_data
+from bufferfolio.equilibrium import Status
+from bufferfolio.figures import as_data
+from bufferfolio.formatting import chemical, mass, plain, volume
+from bufferfolio.make_up_contexts import (
+    Batch,
+    HazardRow,
+    PortionRow,
+    batch_of,
+    hazard_rows,
+    portion_rows,
+    reagents_of,
+)
+from bufferfolio.page_parts import (
+    Cited,
+    ConstantRow,
+    Plot,
+    cited,
+    constant_rows,
+    json_text,
+    plot_of,
+)
+from bufferfolio.plots import SHEET_FIGURES
+from bufferfolio.sheets import Sheet, Side
+from bufferfolio.subjects import state_at
+from bufferfolio.temperature import constants_at
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SpeciesRow:
+    """One line of the table of species."""
+
+    name: str
+    label: str
+    family: str  # label; "" for water's own ions and strong ions
+    molality: float  # mol/kg
+    fraction: float  # of its family; NaN where it has none
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SideRow:
+    """The reserve towards one side."""
+
+    direction: str
+    titrant: str
+    reagent: Reagent
+    limit: float  # pH
+    reserve: float  # mol/kg; NaN: never reached
+    dose: str  # with its unit; of titrant per kg of water
+    contrast: float  # pH of plain water after the same amount
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PairRow:
+    """One interaction coefficient of the specific-ion model."""
+
+    cation: str
+    anion: str
+    epsilon: float  # kg/mol
+    cited: Cited
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class EstimateWords:
+    """Where the textbook's estimate comes from, and what it leaves out."""
+
+    origin: str
+    difference: float  # full answer minus estimate; NaN where there is none
+    activity_part: float  # in pH; NaN where there is no estimate
+    rest: float  # in pH; likewise
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SheetContext:
+    """Everything on the page of one formulation."""
+
+    formulation: Formulation
+    sheet: Sheet
+    status: str
+    status_state: str
+    estimate: EstimateWords
+    model: ActivityModel
+    batch: Batch
+    portions: tuple[PortionRow, ...]
+    species: tuple[SpeciesRow, ...]
+    plots: tuple[Plot, ...]
+    sides: tuple[SideRow, ...]
+    constants: tuple[ConstantRow, ...]
+    pairs: tuple[PairRow, ...]
+    hazards: tuple[HazardRow, ...]
+    releases: tuple[tuple[str, tuple[str, ...]], ...]  # reagent, what it may release
+    sources: tuple[Cited, ...]  # that this page cites, by number
+    fingerprint: str
+    words: str  # that the index looks through
+    lowest_pH: float  # over the temperatures of use
+    highest_pH: float
+    page_data: Markup
+
+
+def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
+    """Return everything on the page of one formulation."""
+    subject, reference = sheet.subject, sheet.reference
+    formulation = subject.formulation
+    figures = [figure for draw in SHEET_FIGURES.values() if (figure := draw(sheet)) is not None]
+    present = [
+        family
+        for family, total in zip(subject.mixture.families, subject.mixture.totals, strict=True)
+        if total > 0.0
+    ]
+    constants = constant_rows(present, reference.temperature, numbers)
+    pairs = _pairs(sheet, numbers)
+    portions = portion_rows(subject, numbers)
+    batch = batch_of(formulation.make_up)
+    data = sheet_data(sheet)
+    data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
+    canonical = json_text(data)
+    data["figures"] = {figure.key: as_data(figure) for figure in figures}
+    reagents = reagents_of(formulation)
+    return SheetContext(
+        formulation=formulation,
+        sheet=sheet,
+        status=STATUS_WORDS[reference.status],
+        status_state=reference.status.name.lower().replace("_", "-"),
+        estimate=_estimate(sheet),
+        model=MODELS[formulation.model],
+        batch=batch,
+        portions=portions,
+        species=_species(sheet),
+        plots=tuple(plot_of(figure) for figure in figures),
+        sides=tuple(_side(sheet, side) for side in sheet.sides),
+        constants=constants,
+        pairs=pairs,
+        hazards=hazard_rows(reagents),
+        releases=tuple((item.label, item.releases) for item in reagents if item.releases),
+        sources=_sources(constants, pairs, portions),
+        fingerprint=hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12],
+        words=_words(formulation, present, reagents),
+        lowest_pH=float(np.nanmin(sheet.drift.state.pH)),
+        highest_pH=float(np.nanmax(sheet.drift.state.pH)),
+        page_data=json_text(data),
+    )
+
+
+def _species(sheet: Sheet) -> tuple[SpeciesRow, ...]:
+    mixture, forms = sheet.subject.mixture, sheet.reference.forms
+    rows = [
+        _unbound("H+", float(forms.hydrogen)),
+        _unbound("OH-", float(forms.hydroxide)),
+    ]
+    for family, total, molalities, shares in zip(
+        mixture.families, mixture.totals, forms.families, forms.fractions, strict=True
+    ):
+        if total > 0.0:
+            rows += [
+                SpeciesRow(
+                    name=form.name,
+                    label=form.label,
+                    family=family.label,
+                    molality=float(molality),
+                    fraction=float(share),
+                )
+                for form, molality, share in zip(family.species, molalities, shares, strict=True)
+            ]
+    rows += [
+        _unbound(ion.name, float(molality))
+        for ion, molality in zip(mixture.ions, mixture.molalities, strict=True)
+        if molality > 0.0
+    ]
+    return tuple(rows)
+
+
+def _unbound(name: str, molality: float) -> SpeciesRow:
+    return SpeciesRow(
+        name=name, label=chemical(name), family="", molality=molality, fraction=math.nan
+    )
+
+
+def _side(sheet: Sheet, side: Side) -> SideRow:
+    subject, added = sheet.subject, side.added
+    limits = subject.formulation.use_pH
+    reached = side.reserve > 0.0
+    contrast, dose = math.nan, ""
+    if reached:
+        nothing = replace(subject, mixture=pure_water(subject.mixture))
+        after = state_at(
+            nothing, sheet.reference.temperature, additions=[(added, side.reserve)]
+        )
+        contrast = after.pH
+        dose = (
+            mass(side.reserve * added.mass)
+            if added.volume is None
+            else volume(side.reserve * added.volume)
+        )
+    return SideRow(
+        direction=side.titrant.direction,
+        titrant=side.titrant.label,
+        reagent=side.titrant.reagent,
+        limit=limits.high if side.titrant.direction == "upward" else limits.low,
+        reserve=side.reserve if reached else math.nan,
+        dose=dose,
+        contrast=contrast,
+    )
+
+
+def _estimate(sheet: Sheet) -> EstimateWords:
+    """Split the difference: activity coefficients, and everything else the estimate leaves out."""
+    subject, reference, estimate = sheet.subject, sheet.reference, sheet.estimate
+    families = subject.mixture.families
+    if estimate.kind == "none":
+        return EstimateWords(
+            origin=NO_PAIR, difference=math.nan, activity_part=math.nan, rest=math.nan
+        )
+    row = next(i for i, family in enumerate(families) if family.key == estimate.family)
+    family = families[row]
+    pK = constants_at(families, np.array(reference.temperature)).pK[row]
+    acid, base = family.species[estimate.step].label, family.species[estimate.step + 1].label
+    if estimate.kind == "pair":
+        origin = (
+            f"pK of {acid} → {base}, {float(pK[estimate.step]):.2f}, plus log₁₀ of the ratio "
+            f"{base} : {acid} as the recipe has it, {plain(estimate.ratio, 3)}."
+        )
+    else:
+        before = float(pK[estimate.step - 1])
+        origin = (
+            f"The recipe holds {acid} alone: half the sum of the pK before and after it, "
+            f"{before:.2f} and {float(pK[estimate.step]):.2f}."
+        )
+    plainly = replace(subject, model=MODELS["ideal"], interactions=())
+    ideal = state_at(plainly, reference.temperature).pH
+    return EstimateWords(
+        origin=origin,
+        difference=reference.pH - estimate.pH,
+        activity_part=reference.pH - ideal,
+        rest=ideal - estimate.pH,
+    )
+
+
+def _pairs(sheet: Sheet, numbers: Mapping[str, int]) -> tuple[PairRow, ...]:
+    if not sheet.subject.model.uses_interactions:
+        return ()
+    return tuple(
+        PairRow(
+            cation=chemical(pair.cation),
+            anion=chemical(pair.anion),
+            epsilon=pair.epsilon,
+            cited=cited(pair.citation, "ε", numbers),
+        )
+        for pair in sheet.subject.interactions
+    )
+
+
+def _words(
+    formulation: Formulation, families: Sequence[Family], reagents: Sequence[Reagent]
+) -> str:
+    words = [formulation.title, formulation.purpose, formulation.key]
+    for family in families:
+        words += [family.label, family.key, *family.synonyms]
+    for reagent in reagents:
+        words += [reagent.label, reagent.formula]
+    return " ".join(words).casefold()
+
+
+def _sources(
+    constants: Sequence[ConstantRow], pairs: Sequence[PairRow], portions: Sequence[PortionRow]
+) -> tuple[Cited, ...]:
+    every = [one for row in constants for one in row.cited]
+    every += [row.cited for row in pairs] + [row.source for row in portions]
+    return tuple({one.number: one for one in sorted(every, key=lambda one: one.number)}.values())
+
+
+NO_PAIR: Final = (
+    "The recipe leaves no conjugate pair partly neutralised, so the textbook's formula says "
+    "nothing about it."
+)
+
+STATUS_WORDS: Final = {
+    Status.SOLVED: "within the range of every constant and of the activity model",
+    Status.OUT_OF_RANGE: "a constant is used outside its source's temperatures",
+    Status.BEYOND_MODEL: "the ionic strength is above what the activity model is trusted to",
+    Status.NO_SOLUTION: "the equations have no solution here",
+}
