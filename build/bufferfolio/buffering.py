@@ -11,7 +11,7 @@ from typing import Final, Literal
 import numpy as np
 
 from bufferfolio.activity import ActivityModel
-from bufferfolio.balance import Problem, Sums, prepare, sums, with_offsets
+from bufferfolio.balance import Problem, Slopes, prepare, slopes, sums, with_offsets
 from bufferfolio.definitions import Interaction
 from bufferfolio.equilibrium import Equilibrium
 from bufferfolio.speciation import Forms, Mixture, forms_at, interaction_matrix, stacked
@@ -65,7 +65,8 @@ def sweep(
         problem = with_offsets(problem, offsets.reshape(len(offsets), -1))
     there = sums(problem, x, u)
     base = there.minus - there.plus
-    slope = _capacity(there, np.exp(u), np.copysign(1.0, base), held=held is not None)
+    there_slopes = slopes(problem, x, u)
+    slope = _capacity(there_slopes, np.exp(u), np.copysign(1.0, base), held=held is not None)
     strength = np.exp(u).reshape(shape)
     return Sweep(
         pH=pH,
@@ -119,22 +120,22 @@ def buffer_capacity(
     if state.offsets is not None:
         problem = with_offsets(problem, state.offsets.reshape(len(state.offsets), -1))
     strength = state.ionic_strength.reshape(-1)
-    there = sums(problem, (-LN10 * state.pH).reshape(-1), np.log(strength))
+    there = slopes(problem, (-LN10 * state.pH).reshape(-1), np.log(strength))
     flat = _capacity(there, strength, np.ones_like(strength), held=False)
     result: FloatArray = flat.reshape(shape)
     return result
 
 
-def _capacity(there: Sums, strength: FloatArray, sign: FloatArray, *, held: bool) -> FloatArray:
+def _capacity(there: Slopes, strength: FloatArray, sign: FloatArray, *, held: bool) -> FloatArray:
     """Differentiate the charge by pH; `sign` is +1 where base is added, −1 where acid is taken."""
-    charge_x = there.by_x[0] - there.by_x[1]
     if held:
-        at_held: FloatArray = LN10 * charge_x
+        at_held: FloatArray = LN10 * there.charge_x
         return at_held
-    charge_u = there.by_u[0] - there.by_u[1]
     # I = ½ (Σ z² m + |b|) with b = −charge, so both sides of it move with x.
-    u_x = (there.by_x[2] - sign * charge_x) / (2.0 * strength - there.by_u[2] + sign * charge_u)
-    result: FloatArray = LN10 * (charge_x + charge_u * u_x)
+    u_x = (there.squares_x - sign * there.charge_x) / (
+        2.0 * strength - there.squares_u + sign * there.charge_u
+    )
+    result: FloatArray = LN10 * (there.charge_x + there.charge_u * u_x)
     return result
 
 
