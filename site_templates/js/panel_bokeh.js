@@ -1,0 +1,95 @@
+/* Bokeh on the page: its scripts fetched once and late, its plots put in the place of the static
+ * drawings. Whatever goes wrong here leaves a page with its drawings. */
+(function (bf) {
+  "use strict";
+
+  const QUIET = 400; // ms without input before a plot is made: making one takes longer than a frame
+
+  /** A maker of plots for one page.
+   * @param {string} assets path of the shared scripts
+   * @returns {{quietFrom: number, scripts: Promise<void> | null, assets: string, busy: boolean,
+   *   waiting: (() => Promise<void>)[], broken: boolean}}
+   */
+  function studio(assets) {
+    return { assets, scripts: null, quietFrom: 0, busy: false, waiting: [], broken: false };
+  }
+
+  /** Draw a figure as a Bokeh plot when the page has time for it.
+   * @param {object} maker of `studio`
+   * @param {HTMLElement} element the page's `figure`
+   * @param {() => Figure} current what is to be drawn by then
+   * @returns {Promise<object | null>} a handle of bokeh_figures; null where there will be none
+   */
+  function plotLater(maker, element, current) {
+    return new Promise((resolve) => {
+      maker.waiting.push(async () => resolve(await plotNow(maker, element, current)));
+      work(maker);
+    });
+  }
+
+  /** Make the plots that are wanted, one after the other, each in a quiet moment. */
+  async function work(maker) {
+    if (maker.busy) return;
+    maker.busy = true;
+    while (maker.waiting.length > 0) {
+      await quietMoment(maker);
+      await maker.waiting.shift()();
+    }
+    maker.busy = false;
+  }
+
+  async function quietMoment(maker) {
+    do {
+      await idle();
+    } while (performance.now() < maker.quietFrom);
+  }
+
+  function idle() {
+    return new Promise((resolve) => {
+      if ("requestIdleCallback" in globalThis) requestIdleCallback(resolve, { timeout: 300 });
+      else setTimeout(resolve, 50);
+    });
+  }
+
+  /** Wait with plots: the reader is moving something. @param {object} maker */
+  function disturb(maker) {
+    maker.quietFrom = performance.now() + QUIET;
+  }
+
+  async function plotNow(maker, element, current) {
+    if (maker.broken) return null;
+    const place = document.createElement("div");
+    place.className = "plot-live";
+    place.setAttribute("role", "img");
+    try {
+      maker.scripts = maker.scripts || fetchScripts(maker.assets);
+      await maker.scripts;
+      element.querySelector(".plot-picture").after(place);
+      element.classList.add("embedding");
+      const handle = await bf.bokeh_figures.embed(place, current());
+      element.classList.replace("embedding", "live");
+      return handle;
+    } catch {
+      maker.broken = true;
+      element.classList.remove("embedding");
+      place.remove();
+      return null;
+    }
+  }
+
+  async function fetchScripts(assets) {
+    await Promise.all([fetchScript(assets + "bokeh.min.js"), fetchScript(assets + "skeletons.js")]);
+  }
+
+  function fetchScript(path) {
+    return new Promise((resolve, reject) => {
+      const script = document.createElement("script");
+      script.src = path;
+      script.addEventListener("load", resolve);
+      script.addEventListener("error", reject);
+      document.head.append(script);
+    });
+  }
+
+  bf.panel_bokeh = { studio, plotLater, disturb };
+})((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -1,0 +1,155 @@
+/* Adding a titrant: the curve, the amount that reaches a pH, and where equivalence shows.
+ * The twin of titration.py, for one mixture.
+ *
+ * @typedef {{pH: number[], ionic_strength: number[], status: number[]}} States
+ * @typedef {{amount: number[], state: States, capacity: number[]}} Curve  a mixture after each
+ *   amount of a titrant: mol per kg of the mixture's own water; capacity of the diluted mixture
+ * @typedef {{amount: number, pH: number, visible: boolean, family: string,
+ *   step: number}} Equivalence  an amount of titrant that meets a whole number of protons
+ */
+(function (bf) {
+  "use strict";
+
+  const { LN10, constantsAt } = bf.temperature;
+  const { strongCharge } = bf.speciation;
+  const { prepare, sums, withOffsets } = bf.balance;
+  const { solve } = bf.equilibrium;
+  const { mixed } = bf.composition;
+  const { bufferCapacity, sortedSteps } = bf.buffering;
+
+  const ROUNDS = 200;
+  const REACHED = 1e-10; // in pH
+
+  /** A mixture's state after each amount, at one temperature. Mirrors `titrate` in titration.py.
+   *
+   * Volume, ionic strength and the constants at the temperature are all taken into account.
+   * Source: conservation of mass, then `solve`.
+   * @param {Mixture} mixture
+   * @param {Addition} added
+   * @param {number[]} amount mol per kg of the mixture's water
+   * @param {number} temperature K
+   * @param {ActivityModel} model
+   * @param {Interaction[]} [interactions]
+   * @returns {Curve}
+   */
+  function titrate(mixture, added, amount, temperature, model, interactions = []) {
+    const constants = constantsAt(mixture.families, temperature);
+    const state = { pH: [], ionic_strength: [], status: [] };
+    const capacity = [];
+    let here = null;
+    for (const portion of amount) {
+      const there = mixed(mixture, added, portion);
+      here = solve(there, constants, model, interactions, here);
+      state.pH.push(here.pH);
+      state.ionic_strength.push(here.ionic_strength);
+      state.status.push(here.status);
+      capacity.push(bufferCapacity(there, constants, model, here));
+    }
+    return { amount, state, capacity };
+  }
+
+  /** How much of a titrant brings a mixture to a pH. Mirrors `amount_to_reach`.
+   * Source: at a given pH and ionic strength the amount is explicit, the charge of the mixture over
+   * that of one mole of titrant; the ionic strength follows by repetition.
+   * @param {Mixture} mixture
+   * @param {Addition} added
+   * @param {number} pH
+   * @param {number} temperature K
+   * @param {ActivityModel} model
+   * @param {Interaction[]} [interactions]
+   * @returns {number} mol per kg of the mixture's water; NaN where none does
+   */
+  function amountToReach(mixture, added, pH, temperature, model, interactions = []) {
+    const constants = constantsAt(mixture.families, temperature);
+    const before = mixed(mixture, added, 0);
+    const withOne = mixed(mixture, added, 1);
+    let amount = 0;
+    let here = null;
+    for (let round = 0; round < ROUNDS; round += 1) {
+      here = solve(mixed(mixture, added, amount), constants, model, interactions, here);
+      const ofMixture = chargeAt(before, constants, model, pH, here);
+      const after = chargeAt(withOne, constants, model, pH, here);
+      // Per kg of the mixture's own water the charge is linear in the amount.
+      const ofTitrant = after * (1 + added.water) - ofMixture;
+      const following = -ofMixture / ofTitrant;
+      if (!(following > 0)) return Math.abs(here.pH - pH) < REACHED ? 0 : NaN;
+      if (Math.abs(following - amount) <= 1e-13 * following) return following;
+      amount = following;
+    }
+    return NaN;
+  }
+
+  /** The charge of a mixture at a pH that is not its own.
+   * @param {Mixture} mixture
+   * @param {Constants} constants
+   * @param {ActivityModel} model
+   * @param {number} pH
+   * @param {Equilibrium} here whose ionic strength and pair terms hold
+   * @returns {number} mol/kg
+   */
+  function chargeAt(mixture, constants, model, pH, here) {
+    let problem = prepare(mixture, constants, model);
+    if (here.offsets !== null) problem = withOffsets(problem, here.offsets);
+    sums(problem, -LN10 * pH, Math.log(here.ionic_strength));
+    return problem.state.plus - problem.state.minus;
+  }
+
+  /** The amounts of a strong titrant that meet a whole number of protons. Mirrors `equivalences`.
+   *
+   * Each is visible where the mixture buffers less than half as well as a quarter of a step before
+   * and after it; otherwise the curve passes it without a sign. A titrant that is itself a family
+   * (phosphoric acid, sodium carbonate) has no single equivalence, and none is returned.
+   * Source: stoichiometry; the criterion is the project's own.
+   * @param {Mixture} mixture
+   * @param {Addition} added
+   * @param {number} temperature K
+   * @param {ActivityModel} model
+   * @param {Interaction[]} [interactions]
+   * @returns {Equivalence[]} in the order of addition
+   */
+  function equivalences(mixture, added, temperature, model, interactions = []) {
+    let charge = 0;
+    added.ions.forEach((ion, k) => (charge += ion.charge * added.per_ion[k]));
+    if (added.families.length > 0 || charge === 0) return [];
+    const net = strongCharge(mixture);
+    const result = [];
+    for (const rung of protonLadder(mixture, constantsAt(mixture.families, temperature))) {
+      const amount = (rung.required - net) / charge;
+      if (!(amount > 1e-3 * rung.size)) continue;
+      const around = [amount - 0.25 * rung.size, amount, amount + 0.25 * rung.size];
+      const amounts = around.map((value) => Math.max(value, 0));
+      const curve = titrate(mixture, added, amounts, temperature, model, interactions);
+      const [before, at, after] = curve.capacity;
+      result.push({
+        amount,
+        pH: curve.state.pH[1],
+        visible: at < 0.5 * Math.min(before, after),
+        family: rung.family,
+        step: rung.step,
+      });
+    }
+    return result.sort((a, b) => a.amount - b.amount);
+  }
+
+  /** What strong charge each step has to meet, strongest acid first. Mirrors `_proton_ladder`.
+   * @param {Mixture} mixture
+   * @param {Constants} constants
+   * @returns {{required: number, size: number, family: string, step: number}[]} mol/kg
+   */
+  function protonLadder(mixture, constants) {
+    let protonated = 0;
+    mixture.families.forEach((family, f) => (protonated += family.charge * mixture.totals[f]));
+    const steps = sortedSteps(mixture, constants.pK);
+    let size = Math.abs(strongCharge(mixture));
+    if (steps.length > 0) size = Math.max(...steps.map((step) => step.total));
+    let required = -protonated;
+    const ladder = [{ required, size, family: "", step: 0 }];
+    for (const { total, key, step } of steps) {
+      required += total;
+      ladder.push({ required, size: total, family: key, step: step + 1 });
+    }
+    return ladder;
+  }
+
+  bf.titration = { titrate, amountToReach, equivalences };
+})((globalThis.bufferfolio = globalThis.bufferfolio || {}));
