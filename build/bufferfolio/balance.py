@@ -242,19 +242,17 @@ def sums(problem: Problem, x: FloatArray, u: FloatArray) -> Sums:
         scale = total / sum(forms)
         amounts = [form * scale for form in forms]
         z = [charge - lost for lost in range(len(forms))]
+        by_sign = [max(q, 0) for q in z], [max(-q, 0) for q in z], [q * q for q in z]
         lost_mean = _moment(range(len(forms)), amounts) / (total + TINY)
-        square_mean = _moment([q * q for q in z], amounts) / (total + TINY)
-        for row, weight in enumerate(
-            ([max(q, 0) for q in z], [max(-q, 0) for q in z], [q * q for q in z])
-        ):
-            if not any(weight):
-                continue
-            mean = _moment(weight, amounts)
-            values[row] = values[row] + mean
-            with_lost = _moment([w * j for j, w in enumerate(weight)], amounts)
-            with_square = _moment([w * q * q for w, q in zip(weight, z, strict=True)], amounts)
-            by_x[row] = by_x[row] - (with_lost - mean * lost_mean)
-            by_g[row] = by_g[row] + (with_square - mean * square_mean)
+        square_mean = _moment(by_sign[2], amounts) / (total + TINY)
+        for row, weight in enumerate(by_sign):
+            if any(weight):
+                mean = _moment(weight, amounts)
+                with_lost = _moment([w * j for j, w in enumerate(weight)], amounts)
+                with_square = _moment([w * q * q for w, q in zip(weight, z, strict=True)], amounts)
+                values[row] = values[row] + mean
+                by_x[row] = by_x[row] - (with_lost - mean * lost_mean)
+                by_g[row] = by_g[row] + (with_square - mean * square_mean)
     return Sums(
         plus=values[0],
         minus=values[1],

@@ -62,24 +62,24 @@ def celsius(temperature: float) -> str:
     return text.rstrip("0").rstrip(".") if "." in text else text
 
 
-def mass(kilograms: float) -> str:
+def mass(kilograms: float, figures: int = 4) -> str:
     """Write a mass in kg, g or mg, with its unit."""
     if kilograms >= 1.0:
-        return f"{plain(kilograms)} kg"
+        return f"{plain(kilograms, figures)} kg"
     if kilograms >= 1e-3:
-        return f"{plain(kilograms * 1e3)} g"
-    return f"{plain(kilograms * 1e6)} mg"
+        return f"{plain(kilograms * 1e3, figures)} g"
+    return f"{plain(kilograms * 1e6, figures)} mg"
 
 
-def volume(cubic_metres: float) -> str:
+def volume(cubic_metres: float, figures: int = 4) -> str:
     """Write a volume in m³, L, mL or µL, with its unit."""
     if cubic_metres >= 1.0:
-        return f"{plain(cubic_metres)} m³"
+        return f"{plain(cubic_metres, figures)} m³"
     if cubic_metres >= 1e-3:
-        return f"{plain(cubic_metres * 1e3)} L"
+        return f"{plain(cubic_metres * 1e3, figures)} L"
     if cubic_metres >= 1e-6:
-        return f"{plain(cubic_metres * 1e6)} mL"
-    return f"{plain(cubic_metres * 1e9)} µL"
+        return f"{plain(cubic_metres * 1e6, figures)} mL"
+    return f"{plain(cubic_metres * 1e9, figures)} µL"
 
 
 def chemical(name: str) -> str:

@@ -60,7 +60,7 @@ def write_site(library: Library, out: Path, progress: Progress) -> tuple[PageRep
         families = _write_explorers(writer, library, numbers, progress)
         progress("index, sources, method")
         index = Shell(page="index", section="formulations", top="", scripts=page_scripts())
-        writer.write("index.html", "index.html", index, sheets=sheets, families=families)
+        writer.write("index.html", "index.html", index, sheets=_by_title(sheets), families=families)
         shell = Shell(page="sources", section="sources", top="", scripts=())
         writer.write(
             "sources.html",
@@ -128,6 +128,10 @@ def _write_explorers(
         writer.write(f"families/{key}.html", "explorer.html", shell, this=context)
         contexts.append(context)
     return tuple(contexts)
+
+
+def _by_title(sheets: tuple[SheetContext, ...]) -> tuple[SheetContext, ...]:
+    return tuple(sorted(sheets, key=lambda sheet: sheet.formulation.title.casefold()))
 
 
 def write_assets(folder: Path) -> None:

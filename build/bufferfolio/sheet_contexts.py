@@ -201,9 +201,9 @@ def _side(sheet: Sheet, side: Side) -> SideRow:
         )
         contrast = after.pH
         dose = (
-            mass(side.reserve * added.mass)
+            mass(side.reserve * added.mass, 3)
             if added.volume is None
-            else volume(side.reserve * added.volume)
+            else volume(side.reserve * added.volume, 3)
         )
     return SideRow(
         direction=side.titrant.direction,

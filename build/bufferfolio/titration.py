@@ -148,21 +148,20 @@ def equivalences(
     if not found:
         return ()
     amounts = np.array([(a - 0.25 * s, a, a + 0.25 * s) for a, s, _, _ in found])
-    curve = titrate(
-        mixture, added, np.maximum(amounts, 0.0), kelvin.reshape(1, 1), model, interactions
-    )
-    result = []
-    for row, (amount, _, family, order) in enumerate(found):
-        before, at, after = curve.capacity[row]
-        result.append(
-            Equivalence(
-                amount=amount,
-                pH=float(curve.state.pH[row, 1]),
-                visible=bool(at < 0.5 * min(before, after)),
-                family=family,
-                step=order,
-            )
+    around = np.maximum(amounts, 0.0)
+    curve = titrate(mixture, added, around, kelvin.reshape(1, 1), model, interactions)
+    result = [
+        Equivalence(
+            amount=amount,
+            pH=float(pH),
+            visible=bool(at < 0.5 * min(before, after)),
+            family=family,
+            step=order,
         )
+        for (amount, _, family, order), pH, (before, at, after) in zip(
+            found, curve.state.pH[:, 1], curve.capacity, strict=True
+        )
+    ]
     return tuple(sorted(result, key=lambda item: item.amount))
 
 

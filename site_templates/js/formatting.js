@@ -44,19 +44,20 @@
     return text.includes(".") ? text.replace(/0+$/, "").replace(/\.$/, "") : text;
   }
 
-  /** A mass with its unit. @param {number} kilograms @returns {string} */
-  function mass(kilograms) {
-    if (kilograms >= 1) return plain(kilograms) + " kg";
-    if (kilograms >= 1e-3) return plain(kilograms * 1e3) + " g";
-    return plain(kilograms * 1e6) + " mg";
+  /** A mass with its unit. @param {number} kilograms @param {number} [figures] @returns {string} */
+  function mass(kilograms, figures = 4) {
+    if (kilograms >= 1) return plain(kilograms, figures) + " kg";
+    if (kilograms >= 1e-3) return plain(kilograms * 1e3, figures) + " g";
+    return plain(kilograms * 1e6, figures) + " mg";
   }
 
-  /** A volume with its unit. @param {number} cubicMetres @returns {string} */
-  function volume(cubicMetres) {
-    if (cubicMetres >= 1) return plain(cubicMetres) + " m³";
-    if (cubicMetres >= 1e-3) return plain(cubicMetres * 1e3) + " L";
-    if (cubicMetres >= 1e-6) return plain(cubicMetres * 1e6) + " mL";
-    return plain(cubicMetres * 1e9) + " µL";
+  /** A volume with its unit. @param {number} cubicMetres @param {number} [figures]
+   * @returns {string} */
+  function volume(cubicMetres, figures = 4) {
+    if (cubicMetres >= 1) return plain(cubicMetres, figures) + " m³";
+    if (cubicMetres >= 1e-3) return plain(cubicMetres * 1e3, figures) + " L";
+    if (cubicMetres >= 1e-6) return plain(cubicMetres * 1e6, figures) + " mL";
+    return plain(cubicMetres * 1e9, figures) + " µL";
   }
 
   /** The significant digits and the power of ten of the first.

@@ -19,6 +19,8 @@
 
   const ROUNDS = 200;
   const REACHED = 1e-10; // in pH
+  const SETTLED = 1e-13; // of an amount
+  const MOST = 1e3; // mol/kg; nothing beyond it is a solution in water
 
   /** A mixture's state after each amount, at one temperature. Mirrors `titrate` in titration.py.
    *
@@ -50,7 +52,7 @@
 
   /** How much of a titrant brings a mixture to a pH. Mirrors `amount_to_reach`.
    * Source: at a given pH and ionic strength the amount is explicit, the charge of the mixture over
-   * that of one mole of titrant; the ionic strength follows by repetition.
+   * that of one mole of titrant; the ionic strength follows by repetition, inside a bracket.
    * @param {Mixture} mixture
    * @param {Addition} added
    * @param {number} pH
@@ -61,22 +63,47 @@
    */
   function amountToReach(mixture, added, pH, temperature, model, interactions = []) {
     const constants = constantsAt(mixture.families, temperature);
-    const before = mixed(mixture, added, 0);
-    const withOne = mixed(mixture, added, 1);
+    let here = solve(mixed(mixture, added, 0), constants, model, interactions);
+    if (Math.abs(here.pH - pH) < REACHED) return 0;
+    const upward = pH > here.pH;
     let amount = 0;
-    let here = null;
-    for (let round = 0; round < ROUNDS; round += 1) {
-      here = solve(mixed(mixture, added, amount), constants, model, interactions, here);
-      const ofMixture = chargeAt(before, constants, model, pH, here);
-      const after = chargeAt(withOne, constants, model, pH, here);
-      // Per kg of the mixture's own water the charge is linear in the amount.
-      const ofTitrant = after * (1 + added.water) - ofMixture;
-      const following = -ofMixture / ofTitrant;
-      if (!(following > 0)) return Math.abs(here.pH - pH) < REACHED ? 0 : NaN;
-      if (Math.abs(following - amount) <= 1e-13 * following) return following;
+    let low = 0;
+    let high = Infinity;
+    let last = Infinity;
+    for (let round = 0; round < ROUNDS && amount < MOST; round += 1) {
+      let following = explicitAmount(mixture, added, constants, model, pH, here);
+      if (amount === 0 && !(following > 0)) return NaN; // it leads the other way
+      const step = Math.abs(following - amount);
+      if (step <= SETTLED * following) return following;
+      // As in `balanceCharge`: steps have to halve, or the bracket is halved instead.
+      if (!(following > low && following < high && step < 0.5 * last)) {
+        following = high < Infinity ? 0.5 * (low + high) : 2 * amount;
+      }
+      last = Math.abs(following - amount);
       amount = following;
+      if (last <= SETTLED * amount) return amount;
+      here = solve(mixed(mixture, added, amount), constants, model, interactions, here);
+      if (here.pH < pH === upward) low = amount;
+      else high = amount;
     }
     return NaN;
+  }
+
+  /** The amount of titrant that brings a mixture to a pH while ionic strength and pair terms stay.
+   * Mirrors `_explicit_amount`.
+   * @param {Mixture} mixture
+   * @param {Addition} added
+   * @param {Constants} constants
+   * @param {ActivityModel} model
+   * @param {number} pH
+   * @param {Equilibrium} here whose ionic strength and pair terms hold
+   * @returns {number} mol per kg of the mixture's water
+   */
+  function explicitAmount(mixture, added, constants, model, pH, here) {
+    const before = chargeAt(mixed(mixture, added, 0), constants, model, pH, here);
+    const after = chargeAt(mixed(mixture, added, 1), constants, model, pH, here);
+    // Per kg of the mixture's own water the charge is linear in the amount.
+    return -before / (after * (1 + added.water) - before);
   }
 
   /** The charge of a mixture at a pH that is not its own.
