@@ -134,17 +134,8 @@ def equivalences(
     Raises: nothing.
     Source: stoichiometry; the criterion is the project's own.
     """
-    charge = sum(ion.charge * share for ion, share in zip(added.ions, added.per_ion, strict=True))
-    if added.families or charge == 0.0:
-        return ()
     kelvin = np.array([temperature])
-    wanted = _proton_ladder(mixture, constants_at(mixture.families, kelvin))
-    net = float(mixture.strong_charge)
-    found = [
-        (amount, step, family, order)
-        for required, step, family, order in wanted
-        if (amount := (required - net) / charge) > 1e-3 * step
-    ]
+    found = _candidates(mixture, added, constants_at(mixture.families, kelvin))
     if not found:
         return ()
     amounts = np.array([(a - 0.25 * s, a, a + 0.25 * s) for a, s, _, _ in found])
@@ -163,6 +154,21 @@ def equivalences(
         )
     ]
     return tuple(sorted(result, key=lambda item: item.amount))
+
+
+def _candidates(
+    mixture: Mixture, added: Addition, constants: Constants
+) -> list[tuple[float, float, str, int]]:
+    """List (amount, size of the step, family, step) of each equivalence still ahead."""
+    charge = sum(ion.charge * share for ion, share in zip(added.ions, added.per_ion, strict=True))
+    if added.families or charge == 0.0:
+        return []
+    net = float(mixture.strong_charge)
+    return [
+        (amount, size, family, order)
+        for required, size, family, order in _proton_ladder(mixture, constants)
+        if (amount := (required - net) / charge) > 1e-3 * size
+    ]
 
 
 def _proton_ladder(mixture: Mixture, constants: Constants) -> list[tuple[float, float, str, int]]:

@@ -51,7 +51,7 @@ DISAGREEMENT = {
     # The ion is strong, and its association with the salt blurs it: the enthalpies of the three
     # equations run from -16 to -24 kJ/mol. [0.055, 0.120, 0.009]
     "Hydrogen sulfate ion, Pitzer et al.": 0.06,
-    "Hydrogen sulfate ion, Marshall & Jones": 0.13,
+    "Hydrogen sulfate ion, Marshall & Jones": 0.17,
     "Hydrogen sulfate ion, Dickson": 0.01,
 }
 
