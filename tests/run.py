@@ -71,6 +71,9 @@ def passed(command: Sequence[str], variables: dict[str, str]) -> bool:
 
 def install_chromium() -> Path:
     """Install Chromium where that takes no questions, and return it; say what to do elsewhere."""
+    named = os.environ.get(CHROMIUM_VARIABLE)
+    if named:
+        raise CannotGoOn(f"{CHROMIUM_VARIABLE} names {named}, which is no program here")
     administrator = as_administrator()
     if shutil.which("apt-get") and administrator is not None:
         print("installing Chromium for the browser tests", flush=True)

@@ -199,12 +199,20 @@ def test_the_browser_named_by_the_variable_comes_first(
 
 def test_without_a_browser_the_run_says_what_to_install(monkeypatch: pytest.MonkeyPatch) -> None:
     run = load(PROJECT / "tests" / "run.py")
+    monkeypatch.delenv(bootstrap.CHROMIUM_VARIABLE, raising=False)
     monkeypatch.setattr(run, "find_chromium", lambda: None)
     monkeypatch.setattr(run, "as_administrator", lambda: None)
     with pytest.raises(Exception, match="Install it:") as refusal:
         run.install_chromium()
     assert "apt-get install chromium" in str(refusal.value)
     assert "--no-browser" in str(refusal.value)
+
+
+def test_a_browser_variable_that_names_nothing_is_said(monkeypatch: pytest.MonkeyPatch) -> None:
+    run = load(PROJECT / "tests" / "run.py")
+    monkeypatch.setenv(bootstrap.CHROMIUM_VARIABLE, "no-such-browser")
+    with pytest.raises(Exception, match="BUFFERFOLIO_CHROMIUM names no-such-browser, which is no"):
+        run.install_chromium()
 
 
 def test_a_failing_linter_fails_the_run_and_pytest_still_comes_last(

@@ -338,8 +338,11 @@ def test_the_output_is_utf8_whatever_the_console(elsewhere: Path) -> None:
 
 
 @pytest.mark.skipif(os.name == "nt", reason="Windows has neither sh nor broken pipes")
-def test_a_reader_that_leaves_is_no_traceback(elsewhere: Path) -> None:
-    command = f"{sys.executable} -m bufferfolio check | true"
+@pytest.mark.parametrize("words", ["check", "check mine"], ids=["sound", "broken"])
+def test_a_reader_that_leaves_is_no_traceback(words: str, elsewhere: Path) -> None:
+    (elsewhere / "mine" / "families").mkdir(parents=True)
+    (elsewhere / "mine" / "families" / "broken.yaml").write_text("label: [")
+    command = f"{sys.executable} -m bufferfolio {words} | true"
     ended = subprocess.run(["sh", "-c", command], cwd=elsewhere, capture_output=True)
     assert ended.stderr == b""
 

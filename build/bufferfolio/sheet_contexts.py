@@ -46,9 +46,16 @@ class SpeciesRow:
 
     name: str
     label: str
-    family: str  # label; "" for water's own ions and strong ions
     molality: float  # mol/kg
     fraction: float  # of its family; NaN where it has none
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SpeciesGroup:
+    """Species that belong together: of water, of one family, ions that keep their charge."""
+
+    label: str
+    rows: tuple[SpeciesRow, ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,7 +103,7 @@ class SheetContext:
     model: ActivityModel
     batch: Batch
     portions: tuple[PortionRow, ...]
-    species: tuple[SpeciesRow, ...]
+    species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
     sides: tuple[SideRow, ...]
     constants: tuple[ConstantRow, ...]
@@ -155,38 +162,36 @@ def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
     )
 
 
-def _species(sheet: Sheet) -> tuple[SpeciesRow, ...]:
+def _species(sheet: Sheet) -> tuple[SpeciesGroup, ...]:
     mixture, forms = sheet.subject.mixture, sheet.reference.forms
-    rows = [
-        _unbound("H+", float(forms.hydrogen)),
-        _unbound("OH-", float(forms.hydroxide)),
-    ]
+    water = (_unbound("H+", float(forms.hydrogen)), _unbound("OH-", float(forms.hydroxide)))
+    groups = [SpeciesGroup(label="water", rows=water)]
     for family, total, molalities, shares in zip(
         mixture.families, mixture.totals, forms.families, forms.fractions, strict=True
     ):
         if total > 0.0:
-            rows += [
+            rows = tuple(
                 SpeciesRow(
                     name=form.name,
                     label=form.label,
-                    family=family.label,
                     molality=float(molality),
                     fraction=float(share),
                 )
                 for form, molality, share in zip(family.species, molalities, shares, strict=True)
-            ]
-    rows += [
+            )
+            groups.append(SpeciesGroup(label=family.label, rows=rows))
+    strong = tuple(
         _unbound(ion.name, float(molality))
         for ion, molality in zip(mixture.ions, mixture.molalities, strict=True)
         if molality > 0.0
-    ]
-    return tuple(rows)
+    )
+    if strong:
+        groups.append(SpeciesGroup(label="ions that keep their charge", rows=strong))
+    return tuple(groups)
 
 
 def _unbound(name: str, molality: float) -> SpeciesRow:
-    return SpeciesRow(
-        name=name, label=chemical(name), family="", molality=molality, fraction=math.nan
-    )
+    return SpeciesRow(name=name, label=chemical(name), molality=molality, fraction=math.nan)
 
 
 def _side(sheet: Sheet, side: Side) -> SideRow:

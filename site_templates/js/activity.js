@@ -1,4 +1,4 @@
-/* Activity coefficients: how far an ion departs from its molality. The twin of activity.py.
+/** Activity coefficients: how far an ion departs from its molality. The twin of activity.py.
  *
  * Every model has the form log10 γ = −z² D(I) + Σ ε m: a long-range term that depends on the
  * ionic strength alone, and, for the specific-ion model, pair interactions with the ions of other

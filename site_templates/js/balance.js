@@ -1,4 +1,4 @@
-/* The two equations that decide a mixture's state, their residuals and their derivatives.
+/** The two equations that decide a mixture's state, their residuals and their derivatives.
  * The twin of balance.py, for one mixture.
  *
  * Unknowns are x = ln a(H+) and u = ln I. The residuals are
@@ -22,13 +22,15 @@
  * @property {number} hydroxide m(OH-) a(H+) likewise: Kw but for interactions
  * @property {number} coefficient Debye–Hückel A
  * @property {LongRangeLaw} long_range
- * @property {Float64Array} forms room for one family's forms
+ * @property {Float64Array} forms room for one family's forms: weights, then mol/kg
  * @property {Evaluation} state room for what an evaluation gives
  *
  * What `sums` and `residuals` fill in; `_x` and `_u` are derivatives by the unknowns.
  * @typedef {object} Evaluation
  * @property {number} term D of the activity model
  * @property {number} slope its derivative by ln I
+ * @property {number} lost_mean protons lost, mean over the forms of the family at hand
+ * @property {number} square_mean z², likewise
  * @property {number} plus mol/kg, positive charge, opposite strong ions cancelled
  * @property {number} minus mol/kg, negative charge likewise
  * @property {number} squares mol/kg, Σ z² m
@@ -96,6 +98,8 @@
     return {
       term: NaN,
       slope: NaN,
+      lost_mean: NaN,
+      square_mean: NaN,
       plus: NaN,
       minus: NaN,
       squares: NaN,
@@ -241,6 +245,33 @@
     state.squares_u *= gByU;
   }
 
+  /** Fill `problem.forms` with the molality of each form of a family, and `problem.state` with
+   * its mean number of protons lost and its mean z².
+   * @param {Problem} problem
+   * @param {number} family its position
+   * @param {number} h activity of H+
+   * @param {number} g 10^D
+   * @returns {number} how many forms
+   */
+  function share(problem, family, h, g) {
+    const { state, forms } = problem;
+    const total = problem.totals[family];
+    const count = problem.starts[family + 1] - problem.starts[family] + 1;
+    const scale = total / weights(problem, family, h, g);
+    let lost = 0;
+    let squares = 0;
+    for (let j = 0; j < count; j += 1) {
+      const z = problem.charges[family] - j;
+      const amount = forms[j] * scale;
+      forms[j] = amount;
+      lost += j * amount;
+      squares += z * z * amount;
+    }
+    state.lost_mean = lost / (total + TINY);
+    state.square_mean = squares / (total + TINY);
+    return count;
+  }
+
   /** Add one family to the sums in `problem.state`, with derivatives by ln g where these belong
    * to u.
    * @param {Problem} problem
@@ -249,51 +280,28 @@
    * @param {number} g 10^D
    */
   function addFamily(problem, family, h, g) {
+    const count = share(problem, family, h, g);
     const { state, forms } = problem;
-    const total = problem.totals[family];
-    const scale = total / weights(problem, family, h, g);
-    const count = problem.starts[family + 1] - problem.starts[family] + 1;
-    // Sums over the forms of protons lost j, positive charge, negative charge and z²; then of the
-    // last three times j, and times z².
-    let lost = 0;
-    let plus = 0;
-    let minus = 0;
-    let squares = 0;
-    let plusLost = 0;
-    let minusLost = 0;
-    let squaresLost = 0;
-    let plusSquare = 0;
-    let minusSquare = 0;
-    let squaresSquare = 0;
+    const { lost_mean: lostMean, square_mean: squareMean } = state;
     for (let j = 0; j < count; j += 1) {
-      const amount = forms[j] * scale;
       const z = problem.charges[family] - j;
-      const square = z * z;
-      lost += j * amount;
-      squares += square * amount;
-      squaresLost += square * j * amount;
-      squaresSquare += square * square * amount;
+      const charge = z * forms[j];
+      const square = z * charge;
+      const lostAway = j - lostMean;
+      const squareAway = z * z - squareMean;
       if (z > 0) {
-        plus += z * amount;
-        plusLost += z * j * amount;
-        plusSquare += z * square * amount;
+        state.plus += charge;
+        state.plus_x -= charge * lostAway;
+        state.plus_u += charge * squareAway;
       } else {
-        minus -= z * amount;
-        minusLost -= z * j * amount;
-        minusSquare -= z * square * amount;
+        state.minus -= charge;
+        state.minus_x += charge * lostAway;
+        state.minus_u -= charge * squareAway;
       }
+      state.squares += square;
+      state.squares_x -= square * lostAway;
+      state.squares_u += square * squareAway;
     }
-    const lostMean = lost / (total + TINY);
-    const squareMean = squares / (total + TINY);
-    state.plus += plus;
-    state.minus += minus;
-    state.squares += squares;
-    state.plus_x -= plusLost - plus * lostMean;
-    state.minus_x -= minusLost - minus * lostMean;
-    state.squares_x -= squaresLost - squares * lostMean;
-    state.plus_u += plusSquare - plus * squareMean;
-    state.minus_u += minusSquare - minus * squareMean;
-    state.squares_u += squaresSquare - squares * squareMean;
   }
 
   /** Fill `problem.state` with both residuals and their derivatives. Mirrors `residuals`.
@@ -335,24 +343,11 @@
     let squaresX = chargeG;
     let squaresG = chargeX;
     for (let f = 0; f < problem.families; f += 1) {
-      const total = problem.totals[f];
-      const scale = total / weights(problem, f, h, g);
-      const count = problem.starts[f + 1] - problem.starts[f] + 1;
-      const { forms } = problem;
-      let lostMean = 0;
-      let squareMean = 0;
+      const count = share(problem, f, h, g);
       for (let lost = 0; lost < count; lost += 1) {
-        const z = problem.charges[f] - lost;
-        lostMean += lost * (forms[lost] * scale);
-        squareMean += z * z * (forms[lost] * scale);
-      }
-      lostMean /= total + TINY;
-      squareMean /= total + TINY;
-      for (let lost = 0; lost < count; lost += 1) {
-        const z = problem.charges[f] - lost;
-        const amount = forms[lost] * scale;
-        const lostAway = lost - lostMean;
-        const squareAway = z * z - squareMean;
+        const amount = problem.forms[lost];
+        const lostAway = lost - state.lost_mean;
+        const squareAway = (problem.charges[f] - lost) ** 2 - state.square_mean;
         chargeX += amount * lostAway * lostAway;
         chargeG -= amount * lostAway * squareAway;
         squaresX -= amount * lostAway * squareAway;

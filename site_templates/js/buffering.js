@@ -1,4 +1,4 @@
-/* What a mixture does at every pH that strong acid or base could bring it to.
+/** What a mixture does at every pH that strong acid or base could bring it to.
  * The twin of buffering.py, for one mixture.
  *
  * All results are explicit in pH: the amount of strong base that belongs to a pH, the forms there,
@@ -42,7 +42,9 @@
   function sweep(mixture, constants, model, pH, interactions = [], ionicStrength = null) {
     const problem = prepare(mixture, constants, model);
     const matrix = model.uses_interactions ? interactionMatrix(mixture, interactions) : null;
+    /** @returns {number[][][]} */
     const rooms = () => mixture.families.map((family) => family.species.map(() => []));
+    /** @type {Sweep} */
     const result = {
       pH,
       ionic_strength: [],
@@ -89,7 +91,7 @@
     let u = held ? Math.log(ionicStrength) : strengthAt(problem, x);
     let offsets = null;
     let settled = matrix === null;
-    for (let round = 0; round < ROUNDS && !settled; round += 1) {
+    for (let round = 0; round < ROUNDS && matrix !== null && !settled; round += 1) {
       const forms = formsAt(mixture, constants, model, pH, Math.exp(u), offsets);
       const last = offsets;
       offsets = product(matrix, stacked(forms, mixture));

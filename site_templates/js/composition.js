@@ -1,4 +1,4 @@
-/* What a titrant adds to the water, and a mixture at another strength. The twin of those parts of
+/** What a titrant adds to the water, and a mixture at another strength. The twin of those parts of
  * composition.py that a page needs: the make-up itself is worked out once, by the build.
  *
  * @typedef {{label: string, reagent: string, direction: "upward" | "downward",

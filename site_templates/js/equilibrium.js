@@ -1,4 +1,4 @@
-/* The pH and the ionic strength that balance charge. The twin of equilibrium.py, for one mixture.
+/** The pH and the ionic strength that balance charge. The twin of equilibrium.py, for one mixture.
  *
  * Two equations are solved together for ln a(H+) and ln I: that the charges of both signs are
  * equal, and that I is the ionic strength of what is there. `newton` takes the steps; the few
@@ -51,6 +51,7 @@
     }
     const pH = found === null ? NaN : -found.ln_h / LN10;
     const strength = found === null ? NaN : Math.exp(found.ln_i);
+    /** @type {number} */
     let status = STATUS.SOLVED;
     if (!constants.in_range) status = STATUS.OUT_OF_RANGE;
     if (strength > model.trusted_to) status = STATUS.BEYOND_MODEL;

@@ -1,4 +1,4 @@
-/* Every analysis of a family on its own, as a record that an explorer shows.
+/** Every analysis of a family on its own, as a record that an explorer shows.
  * The twin of explorations.py.
  *
  * @typedef {{family: Family, temperature: number, total: number, ionic_strength: number,

@@ -1,4 +1,4 @@
-/* Newton's method on both balances together. The twin of newton.py, for one mixture.
+/** Newton's method on both balances together. The twin of newton.py, for one mixture.
  *
  * @typedef {{ln_h: number, ln_i: number}} State  ln a(H+) and ln (I kg/mol)
  */

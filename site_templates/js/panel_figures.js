@@ -76,6 +76,7 @@
     for (const picture of stage.pictures) {
       watcher.observe(picture.element);
       openLegend(picture);
+      bf.panel_tools.makeRoom(picture);
       bf.panel_tables.open(picture, remarks, () => {
         if (picture.stale) refresh(stage, picture);
         else bf.panel_tables.refresh(picture);
@@ -90,7 +91,10 @@
     if (picture.asked) return;
     picture.asked = true;
     bf.panel_bokeh.plotLater(stage.maker, picture.element, () => picture.figure).then((plot) => {
-      if (plot === null) return;
+      if (plot === null) {
+        bf.panel_tools.close(picture);
+        return;
+      }
       picture.plot = plot;
       bf.panel_tools.open(picture);
       draw(picture);
@@ -155,7 +159,7 @@
       // The drawing takes over again, and live answers go on.
       picture.plot = null;
       picture.element.classList.remove("live");
-      picture.element.querySelector(".plot-tools").hidden = true;
+      bf.panel_tools.close(picture);
     }
   }
 

@@ -1,7 +1,7 @@
-/* The page's input fields: a text field and a slider for each quantity, in step with each other.
+/* The page's input fields: a text field and sliders for each quantity, in step with each other.
  *
  * @typedef {{name: string, field: HTMLInputElement | HTMLSelectElement,
- *   slider: HTMLInputElement | null, low: number, high: number, logarithmic: boolean,
+ *   sliders: HTMLInputElement[], low: number, high: number, logarithmic: boolean,
  *   message: HTMLElement | null, standard: string}} Input
  * @typedef {{texts: Map<string, string>, values: Record<string, number>, faulty: boolean}} Reading
  *   texts, as they stand in the address; values, of a choice the factor that it stands for
@@ -19,14 +19,15 @@
     const inputs = new Map();
     for (const field of root.querySelectorAll("[data-input]:not([type=range])")) {
       const name = field.dataset.input;
-      const slider = root.querySelector('[type=range][data-input="' + name + '"]');
+      const twins = root.querySelectorAll('[type=range][data-input="' + name + '"]');
+      const sliders = Array.from(twins);
       inputs.set(name, {
         name,
         field,
-        slider,
+        sliders,
         low: limit(field.dataset.min, -Infinity),
         high: limit(field.dataset.max, Infinity),
-        logarithmic: slider !== null && slider.dataset.scale === "log10",
+        logarithmic: sliders.some((slider) => slider.dataset.scale === "log10"),
         message: root.querySelector('[data-message="' + name + '"]'),
         standard: standardOf(field),
       });
@@ -58,13 +59,14 @@
         follow(input);
         changed();
       });
-      if (input.slider === null) continue;
-      input.slider.disabled = false;
-      input.slider.addEventListener("input", () => {
-        input.field.value = slidTo(input);
-        judge(input);
-        changed();
-      });
+      for (const slider of input.sliders) {
+        slider.disabled = false;
+        slider.addEventListener("input", () => {
+          input.field.value = slidTo(input, slider);
+          follow(input, slider);
+          changed();
+        });
+      }
     }
   }
 
@@ -73,20 +75,25 @@
   }
 
   /** The text that belongs to a slider's place. */
-  function slidTo(input) {
-    if (!input.logarithmic) return input.slider.value;
-    const number = 10 ** Number(input.slider.value);
+  function slidTo(input, slider) {
+    if (!input.logarithmic) return slider.value;
+    const number = 10 ** Number(slider.value);
     // Three figures, and never a rounding beyond the limits.
     const rounded = Number(number.toPrecision(3));
     return String(Math.min(Math.max(rounded, input.low), input.high));
   }
 
-  /** Bring the slider to where its field is, and say what is wrong with the field. */
-  function follow(input) {
-    const faulty = judge(input);
-    if (faulty || input.slider === null) return;
+  /** Bring the sliders to where their field is, and say what is wrong with the field.
+   * @param {Input} input
+   * @param {HTMLInputElement | null} [leader] the slider that a hand is on
+   */
+  function follow(input, leader = null) {
+    if (judge(input)) return;
     const number = numberOf(input.field.value);
-    input.slider.value = String(input.logarithmic ? Math.log10(number) : number);
+    const place = String(input.logarithmic ? Math.log10(number) : number);
+    for (const slider of input.sliders) {
+      if (slider !== leader) slider.value = place;
+    }
   }
 
   /** Say what is wrong with a field. @returns {boolean} whether something is */

@@ -5,14 +5,34 @@
 
   const MODES = { zoom: "box", wheel: "wheel" };
 
+  function toolsOf(picture) {
+    return picture.element.querySelector(".plot-tools");
+  }
+
+  function buttonsOf(picture) {
+    return Array.from(picture.element.querySelectorAll(".plot-tools button[data-tool]"));
+  }
+
+  /** Show the tools, not to be used yet, so that nothing moves when the plot comes.
+   * @param {Picture} picture
+   */
+  function makeRoom(picture) {
+    for (const button of buttonsOf(picture)) button.disabled = true;
+    if (toolsOf(picture) !== null) toolsOf(picture).hidden = false;
+  }
+
+  /** Put the tools of a picture away: there is no plot to use them on.
+   * @param {Picture} picture
+   */
+  function close(picture) {
+    if (toolsOf(picture) !== null) toolsOf(picture).hidden = true;
+  }
+
   /** Let the tools of a picture work; its plot is there by now.
    * @param {Picture} picture
    */
   function open(picture) {
-    const tools = picture.element.querySelector(".plot-tools");
-    if (tools === null) return;
-    tools.hidden = false;
-    const buttons = Array.from(tools.querySelectorAll("button[data-tool]"));
+    const buttons = buttonsOf(picture);
     for (const button of buttons) {
       button.disabled = false;
       button.addEventListener("click", () => use(picture, button, buttons));
@@ -53,5 +73,5 @@
     setTimeout(() => URL.revokeObjectURL(link.href), 10000);
   }
 
-  bf.panel_tools = { open, save };
+  bf.panel_tools = { makeRoom, open, close, save };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -1,4 +1,4 @@
-/* Every analysis of one formulation, as records that a page shows. The twin of sheets.py, but for
+/** Every analysis of one formulation, as records that a page shows. The twin of sheets.py, but for
  * the warnings, which belong to the definition and not to what a reader tries.
  *
  * @typedef {{temperature: number[], state: States}} Drift  pH along temperature, K
@@ -49,6 +49,7 @@
   function driftOf(subject) {
     const { mixture, model, interactions, use_temperature: use } = subject;
     const temperature = linspace(use.low, use.high, DRIFT_POINTS);
+    /** @type {States} */
     const state = { pH: [], ionic_strength: [], status: [] };
     let here = null;
     for (const kelvin of temperature) {

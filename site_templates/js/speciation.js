@@ -1,4 +1,4 @@
-/* How each family of a mixture shares itself out over its forms at a given pH.
+/** How each family of a mixture shares itself out over its forms at a given pH.
  * The twin of speciation.py, for one mixture.
  *
  * @typedef {{name: string, charge: number}} Ion

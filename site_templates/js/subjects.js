@@ -1,4 +1,4 @@
-/* A formulation ready for questions, and its state under given conditions. The twin of
+/** A formulation ready for questions, and its state under given conditions. The twin of
  * subjects.py; what a page's data block says of a formulation takes the place of the definition.
  *
  * @typedef {object} Subject

@@ -1,4 +1,4 @@
-/* How constants move with temperature. The twin of temperature.py, for one temperature.
+/** How constants move with temperature. The twin of temperature.py, for one temperature.
  *
  * The records of a page's data block:
  * @typedef {{low: number, high: number}} Interval

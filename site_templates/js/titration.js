@@ -1,4 +1,4 @@
-/* Adding a titrant: the curve, the amount that reaches a pH, and where equivalence shows.
+/** Adding a titrant: the curve, the amount that reaches a pH, and where equivalence shows.
  * The twin of titration.py, for one mixture.
  *
  * @typedef {{pH: number[], ionic_strength: number[], status: number[]}} States
@@ -36,6 +36,7 @@
    */
   function titrate(mixture, added, amount, temperature, model, interactions = []) {
     const constants = constantsAt(mixture.families, temperature);
+    /** @type {States} */
     const state = { pH: [], ionic_strength: [], status: [] };
     const capacity = [];
     let here = null;
@@ -70,15 +71,10 @@
     let low = 0;
     let high = Infinity;
     let last = Infinity;
-    for (let round = 0; round < ROUNDS && amount < MOST; round += 1) {
-      let following = explicitAmount(mixture, added, constants, model, pH, here);
-      if (amount === 0 && !(following > 0)) return NaN; // it leads the other way
-      const step = Math.abs(following - amount);
-      if (step <= SETTLED * following) return following;
-      // As in `balanceCharge`: steps have to halve, or the bracket is halved instead.
-      if (!(following > low && following < high && step < 0.5 * last)) {
-        following = high < Infinity ? 0.5 * (low + high) : 2 * amount;
-      }
+    for (let round = 0; round < ROUNDS && amount <= MOST; round += 1) {
+      const explicit = explicitAmount(mixture, added, constants, model, pH, here);
+      if (amount === 0 && !(explicit > 0)) return NaN; // it leads the other way
+      const following = nextAmount(explicit, amount, low, high, last);
       last = Math.abs(following - amount);
       amount = following;
       if (last <= SETTLED * amount) return amount;
@@ -87,6 +83,22 @@
       else high = amount;
     }
     return NaN;
+  }
+
+  /** As in `balanceCharge`, steps have to halve, or the bracket is halved instead.
+   * Mirrors `_next_amount`.
+   * @param {number} explicit
+   * @param {number} amount
+   * @param {number} low
+   * @param {number} high
+   * @param {number} last step
+   * @returns {number}
+   */
+  function nextAmount(explicit, amount, low, high, last) {
+    const step = Math.abs(explicit - amount);
+    if (step <= SETTLED * explicit) return explicit;
+    if (explicit > low && explicit < high && step < 0.5 * last) return explicit;
+    return high < Infinity ? 0.5 * (low + high) : 2 * amount;
   }
 
   /** The amount of titrant that brings a mixture to a pH while ionic strength and pair terms stay.
@@ -135,27 +147,35 @@
    * @returns {Equivalence[]} in the order of addition
    */
   function equivalences(mixture, added, temperature, model, interactions = []) {
+    const result = [];
+    for (const found of candidates(mixture, added, constantsAt(mixture.families, temperature))) {
+      const { amount, size, family, step } = found;
+      const around = [amount - 0.25 * size, amount, amount + 0.25 * size];
+      const amounts = around.map((value) => Math.max(value, 0));
+      const curve = titrate(mixture, added, amounts, temperature, model, interactions);
+      const [before, at, after] = curve.capacity;
+      const visible = at < 0.5 * Math.min(before, after);
+      result.push({ amount, pH: curve.state.pH[1], visible, family, step });
+    }
+    return result.sort((a, b) => a.amount - b.amount);
+  }
+
+  /** Every equivalence still ahead. Mirrors `_candidates`.
+   * @param {Mixture} mixture
+   * @param {Addition} added
+   * @param {Constants} constants
+   * @returns {{amount: number, size: number, family: string, step: number}[]} mol/kg
+   */
+  function candidates(mixture, added, constants) {
     let charge = 0;
     added.ions.forEach((ion, k) => (charge += ion.charge * added.per_ion[k]));
     if (added.families.length > 0 || charge === 0) return [];
     const net = strongCharge(mixture);
-    const result = [];
-    for (const rung of protonLadder(mixture, constantsAt(mixture.families, temperature))) {
-      const amount = (rung.required - net) / charge;
-      if (!(amount > 1e-3 * rung.size)) continue;
-      const around = [amount - 0.25 * rung.size, amount, amount + 0.25 * rung.size];
-      const amounts = around.map((value) => Math.max(value, 0));
-      const curve = titrate(mixture, added, amounts, temperature, model, interactions);
-      const [before, at, after] = curve.capacity;
-      result.push({
-        amount,
-        pH: curve.state.pH[1],
-        visible: at < 0.5 * Math.min(before, after),
-        family: rung.family,
-        step: rung.step,
-      });
-    }
-    return result.sort((a, b) => a.amount - b.amount);
+    return protonLadder(mixture, constants)
+      .map(({ required, size, family, step }) => {
+        return { amount: (required - net) / charge, size, family, step };
+      })
+      .filter(({ amount, size }) => amount > 1e-3 * size);
   }
 
   /** What strong charge each step has to meet, strongest acid first. Mirrors `_proton_ladder`.

@@ -14,28 +14,33 @@ def main(words: Sequence[str] | None = None) -> int:
     """Run the command with `words` (the command line, where None) and return its exit code."""
     console.speak_utf8()
     try:
-        arguments = parse(sys.argv[1:] if words is None else words)
-        code = ACTIONS[arguments.action](arguments)
-        sys.stdout.flush()
-        return code
-    except CommandLineError as problem:
-        return _complain(f"bufferfolio: {problem}", ExitCode.WRONG_COMMAND_LINE)
-    except BufferfolioError as problem:
-        return _complain(str(problem), ExitCode.WRONG_INPUT)
-    except KeyboardInterrupt:
-        return _complain("stopped", ExitCode.STOPPED)
+        code, message = _outcome(sys.argv[1:] if words is None else words)
+        sys.stdout.flush()  # what was found comes before what is wrong with it
     except BrokenPipeError:
         # Whoever read the output has left; nothing may be written at the exit either.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return ExitCode.WRONG_INPUT
+    if message:
+        print(message, file=sys.stderr)
+    return code
+
+
+def _outcome(words: Sequence[str]) -> tuple[ExitCode, str]:
+    """Return the exit code, and what is to be said about it."""
+    try:
+        arguments = parse(words)
+        return ACTIONS[arguments.action](arguments), ""
+    except CommandLineError as problem:
+        return ExitCode.WRONG_COMMAND_LINE, f"bufferfolio: {problem}"
+    except BufferfolioError as problem:
+        return ExitCode.WRONG_INPUT, str(problem)
+    except KeyboardInterrupt:
+        return ExitCode.STOPPED, "stopped"
+    except BrokenPipeError:
+        raise
     except OSError as problem:
         about = f"{problem.filename}: " if problem.filename else ""
-        return _complain(f"{about}{problem.strerror or problem}", ExitCode.WRONG_INPUT)
-
-
-def _complain(message: str, code: ExitCode) -> ExitCode:
-    print(message, file=sys.stderr)
-    return code
+        return ExitCode.WRONG_INPUT, f"{about}{problem.strerror or problem}"
 
 
 ACTIONS: Final[Mapping[str, Callable[[Arguments], ExitCode]]] = {

@@ -1,0 +1,167 @@
+#!/usr/bin/env python3
+"""How fast a built site answers: `python tests/benchmarks/browser.py [SITE] [PAGE]`.
+
+Opens a sheet in Chromium, at full speed and with the processor four times throttled, and prints
+what the design has targets for. Not a test: times belong to the machine that they were taken on.
+"""
+
+import os
+import statistics
+import sys
+import tempfile
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Final
+
+from playwright.sync_api import Browser, Page, sync_playwright
+
+sys.path.insert(0, str(Path(__file__).resolve().parents[2] / "build"))
+
+from bootstrap import find_chromium
+from bufferfolio import resources
+from bufferfolio.pages import write_site
+from bufferfolio.reading import read_library
+
+LOADS: Final = 5
+UPDATES: Final = 21
+SPEEDS: Final = (1, 4)  # how many times slower than the machine is
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Target:
+    """One line of the table."""
+
+    name: str
+    milliseconds: tuple[float, float]  # at full speed, and throttled
+
+
+TARGETS: Final = (
+    Target(name="picture on screen", milliseconds=(300, 1200)),
+    Target(name="first Bokeh plot", milliseconds=(1200, 3500)),
+    Target(name="live numbers", milliseconds=(16, 50)),
+    Target(name="visible drawing refreshed", milliseconds=(50, 250)),
+    Target(name="visible plots refreshed", milliseconds=(50, 250)),
+)
+
+# Runs before the page's own scripts: notes the first frame after something is there to be seen.
+WATCH: Final = """
+  window.seen = {};
+  const watch = () => {
+    const now = performance.now();
+    if (!seen.picture && document.querySelector(".plot-picture svg")) seen.picture = now;
+    if (!seen.plot && document.querySelector("figure.live")) seen.plot = now;
+    if (!seen.plot) requestAnimationFrame(watch);
+  };
+  requestAnimationFrame(watch);
+"""
+
+# One input, timed to the end of its own handlers (numbers stand on the page and are laid out) and
+# to the end of the frame that shows the figures.
+UPDATE: Final = """
+  (value) => new Promise((resolve) => {
+    const slider = document.querySelector("[type=range][data-input=temperature]");
+    requestAnimationFrame(() => {
+      const start = performance.now();
+      slider.value = String(value);
+      slider.dispatchEvent(new Event("input", { bubbles: true }));
+      document.body.offsetHeight;
+      const numbers = performance.now() - start;
+      requestAnimationFrame(() => {
+        const frame = performance.now();
+        // Bokeh paints in the frame after the one that gives it new data.
+        requestAnimationFrame(() => {
+          const channel = new MessageChannel();
+          channel.port1.onmessage = () => resolve([numbers, performance.now() - start]);
+          channel.port2.postMessage(0);
+        });
+      });
+    });
+  })
+"""
+
+
+def main() -> None:
+    """Measure and print."""
+    chromium = find_chromium()
+    if chromium is None:
+        sys.exit("no Chromium was found")
+    with tempfile.TemporaryDirectory() as folder, sync_playwright() as playwright:
+        site = Path(sys.argv[1]) if len(sys.argv) > 1 else built_site(Path(folder) / "site")
+        name = sys.argv[2] if len(sys.argv) > 2 else "formulations/citrate-phosphate.html"
+        administrator = hasattr(os, "geteuid") and os.geteuid() == 0
+        arguments = ["--disable-gpu", *(["--no-sandbox"] if administrator else [])]
+        browser = playwright.chromium.launch(executable_path=chromium, args=arguments)
+        measured = [measurements(browser, site / name, speed) for speed in SPEEDS]
+        browser.close()
+    print(f"{name}, medians in ms of {LOADS} loads or {UPDATES} updates; in brackets the target")
+    print(f"{'':28}{'full speed':>20}{'4 times slower':>20}")
+    for target in TARGETS:
+        cells = [
+            f"{values[target.name]:.0f} ({aim:.0f})"
+            for values, aim in zip(measured, target.milliseconds, strict=True)
+        ]
+        print(f"{target.name:28}{cells[0]:>20}{cells[1]:>20}")
+    print(f"plots in sight: {measured[0]['plots in sight']:.0f}")
+
+
+def built_site(out: Path) -> Path:
+    """Build the shipped site into a folder."""
+    write_site(read_library(resources.systems()), out, lambda _: None)
+    return out
+
+
+def measurements(browser: Browser, path: Path, speed: int) -> dict[str, float]:
+    """Return every time, in ms, at one speed."""
+    pictures, plots = [], []
+    for _ in range(LOADS):
+        page = opened(browser, path, speed)
+        page.locator("figure.live").first.wait_for(timeout=60_000)
+        page.wait_for_timeout(100)
+        pictures.append(page.evaluate("seen.picture"))
+        plots.append(page.evaluate("seen.plot"))
+        page.context.close()
+    found = {
+        "picture on screen": statistics.median(pictures),
+        "first Bokeh plot": statistics.median(plots),
+    }
+    page = opened(browser, path, speed)
+    page.wait_for_timeout(4000)
+    found["plots in sight"] = float(page.locator("figure.live").count())
+    numbers, frames = updates(page)
+    found["live numbers"] = numbers
+    found["visible plots refreshed"] = frames
+    page.context.close()
+    page = opened(browser, path, speed, without="**/bokeh.min.js")
+    page.wait_for_timeout(2000)
+    found["visible drawing refreshed"] = updates(page)[1]
+    page.context.close()
+    return found
+
+
+def opened(browser: Browser, path: Path, speed: int, without: str | None = None) -> Page:
+    """Return a page that shows its pictures, in a fresh context."""
+    page = browser.new_context(viewport={"width": 1280, "height": 900}, offline=True).new_page()
+    if without is not None:
+        page.route(without, lambda route: route.abort())
+    page.add_init_script(WATCH)
+    session = page.context.new_cdp_session(page)
+    session.send("Emulation.setCPUThrottlingRate", {"rate": speed})
+    page.goto(path.as_uri() + "#figure-fractions", wait_until="commit")
+    return page
+
+
+def updates(page: Page) -> tuple[float, float]:
+    """Return the median time of numbers and of the frame that shows the figures."""
+    low, high = page.evaluate(
+        "() => { const s = document.querySelector('[type=range][data-input=temperature]');"
+        " return [Number(s.min), Number(s.max)]; }"
+    )
+    times = [
+        page.evaluate(UPDATE, low + (high - low) * (step + 1) / (UPDATES + 1))
+        for step in range(UPDATES)
+    ]
+    return tuple(statistics.median(column) for column in zip(*times, strict=True))
+
+
+if __name__ == "__main__":
+    main()
