@@ -1,6 +1,6 @@
 """Families, mixtures and constants that tests make up for themselves, with every number in sight."""
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import replace
 
 import numpy as np
@@ -68,9 +68,10 @@ def made_up_family(key: str, charge: int, pK: Sequence[float], valid: Interval |
 
 
 def mixture_of(
-    families: Sequence[tuple[Family, object]] = (), ions: Sequence[tuple[Ion, object]] = ()
+    families: Iterable[tuple[Family, object]] = (), ions: Iterable[tuple[Ion, object]] = ()
 ) -> Mixture:
     """Return a mixture from pairs of what is in it and how much: numbers, or arrays of a shape S."""
+    families, ions = list(families), list(ions)
     shape = np.broadcast_shapes(*(np.shape(amount) for _, amount in [*families, *ions]))
 
     def rows(pairs: Sequence[tuple[object, object]]) -> np.ndarray:

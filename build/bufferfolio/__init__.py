@@ -1,0 +1,1 @@
+"""Buffered formulations from YAML to an offline folio that computes."""

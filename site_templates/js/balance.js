@@ -27,25 +27,19 @@
  *
  * What `sums` and `residuals` fill in; `_x` and `_u` are derivatives by the unknowns.
  * @typedef {object} Evaluation
- * @property {number} term D of the activity model
- * @property {number} slope its derivative by ln I
+ * @property {number} term D of the activity model, and `slope`, its derivative by ln I
+ * @property {number} slope
  * @property {number} lost_mean protons lost, mean over the forms of the family at hand
  * @property {number} square_mean z², likewise
  * @property {number} plus mol/kg, positive charge, opposite strong ions cancelled
  * @property {number} minus mol/kg, negative charge likewise
  * @property {number} squares mol/kg, Σ z² m
- * @property {number} plus_x
- * @property {number} minus_x
- * @property {number} squares_x
- * @property {number} plus_u
- * @property {number} minus_u
- * @property {number} squares_u
+ * @property {number} plus_x @property {number} minus_x @property {number} squares_x
+ * @property {number} plus_u @property {number} minus_u @property {number} squares_u
  * @property {number} charge residual
  * @property {number} strength residual
- * @property {number} charge_x
- * @property {number} charge_u
- * @property {number} strength_x
- * @property {number} strength_u
+ * @property {number} charge_x @property {number} strength_x
+ * @property {number} charge_u @property {number} strength_u
  *
  * @typedef {{charge_x: number, charge_u: number, squares_x: number, squares_u: number}} Slopes
  *   derivatives of the charge and of Σ z² m, mol/kg
@@ -76,9 +70,7 @@
    * @returns {ExactSum} mol/kg
    */
   function exactCharge(mixture) {
-    const sum = { total: NaN, rest: NaN };
-    sum.total = 0;
-    sum.rest = 0;
+    const sum = { total: 0, rest: 0 };
     for (let i = 0; i < mixture.ions.length; i += 1) {
       const charge = mixture.ions[i].charge;
       const amount = charge < 0 ? -mixture.molalities[i] : mixture.molalities[i];
@@ -90,31 +82,17 @@
     return sum;
   }
 
-  /** Room for an evaluation. NaN marks every place as a fraction from the start; with zeros a script
-   * engine would take them for whole numbers and change its mind in the middle of a solve.
-   * @returns {Evaluation}
-   */
+  // NaN marks every place as a fraction from the start; with zeros a script engine would take them
+  // for whole numbers and change its mind in the middle of a solve.
+  /** @returns {Evaluation} room for an evaluation */
   function emptyEvaluation() {
     return {
-      term: NaN,
-      slope: NaN,
-      lost_mean: NaN,
-      square_mean: NaN,
-      plus: NaN,
-      minus: NaN,
-      squares: NaN,
-      plus_x: NaN,
-      minus_x: NaN,
-      squares_x: NaN,
-      plus_u: NaN,
-      minus_u: NaN,
-      squares_u: NaN,
-      charge: NaN,
-      strength: NaN,
-      charge_x: NaN,
-      charge_u: NaN,
-      strength_x: NaN,
-      strength_u: NaN,
+      term: NaN, slope: NaN, lost_mean: NaN, square_mean: NaN,
+      plus: NaN, minus: NaN, squares: NaN,
+      plus_x: NaN, minus_x: NaN, squares_x: NaN,
+      plus_u: NaN, minus_u: NaN, squares_u: NaN,
+      charge: NaN, charge_x: NaN, charge_u: NaN,
+      strength: NaN, strength_x: NaN, strength_u: NaN,
     };
   }
 
@@ -354,12 +332,8 @@
         squaresG += amount * squareAway * squareAway;
       }
     }
-    return {
-      charge_x: chargeX,
-      charge_u: gByU * chargeG,
-      squares_x: squaresX,
-      squares_u: gByU * squaresG,
-    };
+    const [chargeU, squaresU] = [gByU * chargeG, gByU * squaresG];
+    return { charge_x: chargeX, charge_u: chargeU, squares_x: squaresX, squares_u: squaresU };
   }
 
   bf.balance = { twoSum, prepare, withOffsets, weights, sums, residuals, slopes };

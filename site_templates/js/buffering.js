@@ -244,12 +244,14 @@
    * @returns {{value: number, total: number, key: string, step: number}[]}
    */
   function sortedSteps(mixture, pK) {
+    /** @type {{value: number, total: number, key: string, step: number}[]} */
     const steps = [];
     for (let f = 0; f < mixture.families.length; f += 1) {
       const total = mixture.totals[f];
       const key = mixture.families[f].key;
       if (total > 0) pK[f].forEach((value, step) => steps.push({ value, total, key, step }));
     }
+    /** @param {{key: string}} a @param {{key: string}} b */
     const byKey = (a, b) => Number(a.key > b.key) - Number(a.key < b.key);
     return steps.sort(
       (a, b) => a.value - b.value || a.total - b.total || byKey(a, b) || a.step - b.step,

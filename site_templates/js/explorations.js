@@ -40,8 +40,10 @@
     const axis = linspace(ZERO_CELSIUS, ZERO_CELSIUS + 60, 61);
     const pK = family.steps.map((step) => {
       const { low, high } = step.valid_temperature;
-      const inside = (kelvin) => kelvin >= low - 1e-3 && kelvin <= high + 1e-3;
-      return axis.map((kelvin) => (inside(kelvin) ? pKAt(step, kelvin) : NaN));
+      /** @param {number} kelvin */
+      const within = (kelvin) =>
+        kelvin >= low - 1e-3 && kelvin <= high + 1e-3 ? pKAt(step, kelvin) : NaN;
+      return axis.map(within);
     });
     return {
       family,

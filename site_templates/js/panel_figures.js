@@ -1,5 +1,6 @@
-/* The page's figures while numbers move: drawn again where they are in sight, one update a frame,
- * the latest results only; elsewhere they wait until they come into sight.
+/* The page's figures while numbers move: drawn again where they are in sight, after the frame that
+ * shows the numbers, one plot a frame, the latest results only. Elsewhere they wait until they come
+ * into sight.
  *
  * @typedef {object} Picture
  * @property {HTMLElement} element the page's `figure`
@@ -14,6 +15,7 @@
  * @property {boolean} inSight
  * @property {boolean} asked whether a plot has been asked for
  * @property {boolean} stale whether newer results wait
+ * @property {number} refreshed when it was last drawn, in ms of the page's clock
  * @property {object | null} plot a handle of bokeh_figures
  *
  * @typedef {object} Stage
@@ -25,6 +27,8 @@
  */
 (function (bf) {
   "use strict";
+
+  const FRAME_SHARE = 8; // ms of a frame for working out and drawing
 
   /** Every figure of a page, ready to follow.
    * @param {ParentNode} root
@@ -55,8 +59,8 @@
       bands: bands === null ? "" : bands.innerHTML,
     };
     return {
-      element, key: figure.key, drawing, summary, bands, original, figure,
-      hidden: new Set(), inSight: false, asked: false, stale: false, plot: null,
+      element, key: figure.key, drawing, summary, bands, original, figure, plot: null,
+      hidden: new Set(), inSight: false, asked: false, stale: false, refreshed: 0,
     };
   }
 
@@ -112,15 +116,26 @@
     ask(stage);
   }
 
+  /** Have figures drawn after the next frame, so that numbers are on the screen before. */
   function ask(stage) {
     if (stage.queued) return;
     stage.queued = true;
-    requestAnimationFrame(() => {
-      stage.queued = false;
-      for (const picture of stage.pictures) {
-        if (picture.stale && picture.inSight) refresh(stage, picture);
-      }
-    });
+    requestAnimationFrame(() => setTimeout(() => work(stage)));
+  }
+
+  /** Refresh what waits in sight, the longest waiting first: one plot, or drawings while there is
+   * time in a frame. */
+  function work(stage) {
+    stage.queued = false;
+    const waiting = stage.pictures.filter((picture) => picture.stale && picture.inSight);
+    waiting.sort((one, other) => one.refreshed - other.refreshed);
+    const start = performance.now();
+    for (const picture of waiting) {
+      refresh(stage, picture);
+      picture.refreshed = performance.now();
+      if (picture.plot !== null || picture.refreshed - start > FRAME_SHARE) break;
+    }
+    if (waiting.some((picture) => picture.stale)) ask(stage);
   }
 
   /** Work out a figure's newest state and draw it.

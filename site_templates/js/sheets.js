@@ -106,7 +106,7 @@
       added,
       curve: titrate(mixture, added, amount, temperature, model, interactions),
       contrast: titrate(pureWater(mixture), added, amount, temperature, model, interactions),
-      equivalences: points.filter((point) => point.amount <= range),
+      equivalences: points.filter((/** @type {Equivalence} */ point) => point.amount <= range),
       reserve,
     };
   }

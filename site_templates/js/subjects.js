@@ -25,7 +25,7 @@
   const { bufferCapacity } = bf.buffering;
 
   /** A formulation with what is needed to reckon with it. Mirrors `subject_of` in subjects.py.
-   * @param {object} data the `subject` of a page's data block, see engine_data.py
+   * @param {any} data the `subject` of a page's data block, see engine_data.py
    * @param {number} [strength] multiplies everything in the water
    * @returns {Subject}
    */

@@ -188,7 +188,7 @@
     mixture.families.forEach((family, f) => (protonated += family.charge * mixture.totals[f]));
     const steps = sortedSteps(mixture, constants.pK);
     let size = Math.abs(strongCharge(mixture));
-    if (steps.length > 0) size = Math.max(...steps.map((step) => step.total));
+    if (steps.length > 0) size = Math.max(...steps.map((/** @type {{total: number}} */ each) => each.total));
     let required = -protonated;
     const ladder = [{ required, size, family: "", step: 0 }];
     for (const { total, key, step } of steps) {
