@@ -97,7 +97,8 @@ def _settle_pairs(
             u = _strength(with_offsets(problem, offsets.reshape(len(offsets), -1)), x)
         if np.max(np.abs(offsets - last)) < SETTLED:
             break
-    return u, offsets
+    moving = np.max(np.abs(offsets - last), axis=0).reshape(-1)
+    return np.where(moving < SETTLED, u, np.nan), offsets
 
 
 def buffer_capacity(

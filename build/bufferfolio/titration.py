@@ -1,5 +1,6 @@
 """Adding a titrant: the curve, the amount that reaches a pH, and where equivalence shows."""
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Final
@@ -18,6 +19,8 @@ from bufferfolio.water import FloatArray
 
 ROUNDS: Final = 200
 REACHED: Final = 1e-10  # in pH
+SETTLED: Final = 1e-13  # of an amount
+MOST: Final = 1e3  # mol/kg; nothing beyond it is a solution in water
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -80,25 +83,51 @@ def amount_to_reach(
     Units: temperature K; result mol per kg of the mixture's water.
     Raises: ValueError where the mixture does not list what the titrant brings.
     Source: at a given pH and ionic strength the amount is explicit, the charge of the mixture over
-        that of one mole of titrant; the ionic strength follows by repetition.
+        that of one mole of titrant; the ionic strength follows by repetition, in a bracket.
     """
     constants = constants_at(mixture.families, np.array([temperature]))
-    x = np.array([-LN10 * pH])
-    amount = 0.0
+    here = solve(mixed(mixture, added, np.zeros(1)), constants, model, interactions)
+    if abs(float(here.pH[0]) - pH) < REACHED:
+        return 0.0
+    upward = pH > float(here.pH[0])
+    amount, low, high, last = 0.0, 0.0, math.inf, math.inf
     for _ in range(ROUNDS):
+        explicit = _explicit_amount(mixture, added, constants, model, pH, here)
+        if amount == 0.0 and not explicit > 0.0:
+            break  # it leads the other way
+        following = _next_amount(explicit, amount, low, high, last)
+        last, amount = abs(following - amount), following
+        if last <= SETTLED * amount:
+            return amount
+        if amount > MOST:
+            break
         here = solve(mixed(mixture, added, np.array([amount])), constants, model, interactions)
-        u, offsets = np.log(here.ionic_strength), here.offsets
-        of_mixture = _charge(mixed(mixture, added, np.zeros(1)), constants, model, x, u, offsets)
-        after = _charge(mixed(mixture, added, np.ones(1)), constants, model, x, u, offsets)
-        # Per kg of the mixture's own water the charge is linear in the amount.
-        of_titrant = after * (1.0 + added.water) - of_mixture
-        following = -of_mixture / of_titrant
-        if not following > 0.0:
-            return 0.0 if abs(float(here.pH[0]) - pH) < REACHED else float("nan")
-        if abs(following - amount) <= 1e-13 * following:
-            return following
-        amount = following
-    return float("nan")
+        low, high = (amount, high) if (float(here.pH[0]) < pH) == upward else (low, amount)
+    return math.nan
+
+
+def _next_amount(explicit: float, amount: float, low: float, high: float, last: float) -> float:
+    """As in `bracketing.balance_charge`, steps have to halve, or the bracket is halved instead."""
+    step = abs(explicit - amount)
+    if step <= SETTLED * explicit or (low < explicit < high and step < 0.5 * last):
+        return explicit
+    return 0.5 * (low + high) if high < math.inf else 2.0 * amount
+
+
+def _explicit_amount(
+    mixture: Mixture,
+    added: Addition,
+    constants: Constants,
+    model: ActivityModel,
+    pH: float,
+    here: Equilibrium,
+) -> float:
+    """Return the amount that leads to a pH while ionic strength and pair terms stay."""
+    x, u = np.array([-LN10 * pH]), np.log(here.ionic_strength)
+    before = _charge(mixed(mixture, added, np.zeros(1)), constants, model, x, u, here.offsets)
+    after = _charge(mixed(mixture, added, np.ones(1)), constants, model, x, u, here.offsets)
+    # Per kg of the mixture's own water the charge is linear in the amount.
+    return -before / (after * (1.0 + added.water) - before)
 
 
 def _charge(

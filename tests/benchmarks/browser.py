@@ -9,6 +9,7 @@ import os
 import statistics
 import sys
 import tempfile
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Final
@@ -116,16 +117,24 @@ def main() -> None:
         browser = playwright.chromium.launch(executable_path=chromium, args=arguments)
         measured = [measurements(browser, site / name, speed) for speed in SPEEDS]
         browser.close()
-    print(f"{name}, medians in ms of {LOADS} loads or {UPDATES} updates; in brackets the target")
-    print(f"{'':28}{'full speed':>20}{'4 times slower':>20}")
+    sys.stdout.write(report(name, measured))
+
+
+def report(name: str, measured: Sequence[Mapping[str, float]]) -> str:
+    """Return the table of what was measured at each speed."""
+    lines = [
+        f"{name}, medians in ms of {LOADS} loads or {UPDATES} updates; in brackets the target",
+        f"{'':28}{'full speed':>20}{'4 times slower':>20}",
+    ]
     for target in TARGETS:
         cells = [
             f"{values[target.name]:.0f} ({aim:.0f})"
             for values, aim in zip(measured, target.milliseconds, strict=True)
         ]
-        print(f"{target.name:28}{cells[0]:>20}{cells[1]:>20}")
-    for name in ("all drawings in sight", "all plots in sight"):
-        print(f"{name:28}{measured[0][name]:>20.0f}{measured[1][name]:>20.0f}")
+        lines.append(f"{target.name:28}{cells[0]:>20}{cells[1]:>20}")
+    for extra in ("all drawings in sight", "all plots in sight"):
+        lines.append(f"{extra:28}{measured[0][extra]:>20.0f}{measured[1][extra]:>20.0f}")
+    return "\n".join(lines) + "\n"
 
 
 def built_site(out: Path) -> Path:
