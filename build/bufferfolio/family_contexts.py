@@ -8,6 +8,8 @@ from markupsafe import Markup
 
 from bufferfolio.definitions import Family, Formulation, Library, Reagent
 from bufferfolio.engine_data import explorer_data
+from bufferfolio.explorations import Exploration
+from bufferfolio.explorer_plots import EXPLORER_FIGURES, explorer_fractions
 from bufferfolio.figures import as_data
 from bufferfolio.page_parts import (
     Cited,
@@ -17,8 +19,6 @@ from bufferfolio.page_parts import (
     json_text,
     plot_of,
 )
-from bufferfolio.explorer_plots import EXPLORER_FIGURES, explorer_fractions
-from bufferfolio.explorations import Exploration
 from bufferfolio.svg_figures import thumbnail
 
 

@@ -7,7 +7,7 @@ from typing import Final
 
 from bufferfolio.figure_ticks import power_of_ten
 from bufferfolio.figures import Axis, Cells, Figure
-from bufferfolio.formatting import fixed, plain
+from bufferfolio.formatting import fixed, plain, significant
 
 MOST_ROWS: Final = 33
 MOST_MAP_ROWS: Final = 7
@@ -29,14 +29,28 @@ def numbers_table(figure: Figure) -> NumbersTable:
         return _of_map(figure, figure.cells)
     if not figure.series:
         return NumbersTable(head=(figure.x.title,), rows=())
-    decimals = _decimals(figure.y)
     x = figure.series[0].x.tolist()
+    if any(series.x.tolist() != x for series in figure.series):
+        return _one_after_the_other(figure)
     columns = [series.y.tolist() for series in figure.series]
     return NumbersTable(
         head=(figure.x.title, *(series.label for series in figure.series)),
         rows=tuple(
-            (plain(x[at]), *(fixed(column[at], decimals) for column in columns))
+            (plain(x[at]), *(_text(column[at], figure.y) for column in columns))
             for at in _thinned(len(x), MOST_ROWS)
+        ),
+    )
+
+
+def _one_after_the_other(figure: Figure) -> NumbersTable:
+    """Return lines that do not share their points."""
+    most = max(2, MOST_ROWS // len(figure.series))
+    return NumbersTable(
+        head=("", figure.x.title, figure.y.title),
+        rows=tuple(
+            (series.label, plain(float(series.x[at])), _text(float(series.y[at]), figure.y))
+            for series in figure.series
+            for at in _thinned(len(series.x), most)
         ),
     )
 
@@ -72,10 +86,12 @@ def _centres(edges: Sequence[float]) -> list[float]:
     return [0.0 if abs(centre) < tiny else centre for centre in centres]
 
 
-def _decimals(axis: Axis) -> int:
-    """Return how many decimals are finer than a reader could take from the picture."""
+def _text(value: float, axis: Axis) -> str:
+    """Write a value more finely than a reader could take it from the picture."""
+    if axis.scale == "log":
+        return significant(value)
     finest = (axis.high - axis.low) / 200.0
     decimals = 0
     while decimals < MOST_DECIMALS and power_of_ten(-decimals) > finest:
         decimals += 1
-    return decimals
+    return fixed(value, decimals)

@@ -94,7 +94,8 @@ def portion_rows(subject: Subject, numbers: Mapping[str, int]) -> tuple[PortionR
 def _grade(reagent: Reagent) -> str:
     stock = reagent.stock
     if stock is not None:
-        return f"{plain(100.0 * stock.mass_fraction, 3)} % by mass, {plain(stock.density / 1000.0)} g/mL"
+        share, density = 100.0 * stock.mass_fraction, stock.density / 1000.0
+        return f"{plain(share, 3)} % by mass, {plain(density)} g/mL"
     return f"{plain(100.0 * reagent.purity)} % pure" if reagent.purity < 1.0 else ""
 
 
@@ -125,12 +126,12 @@ def hazard_rows(reagents: Sequence[Reagent]) -> tuple[HazardRow, ...]:
     )
 
 
-VOLUME_UNITS: Final = (
+VOLUME_UNITS: Final[tuple[Unit, ...]] = (
     Unit(value="mL", label="mL", factor=1e-6),
     Unit(value="L", label="L", factor=1e-3),
     Unit(value="m3", label="m³", factor=1.0),
 )
-MASS_UNITS: Final = (
+MASS_UNITS: Final[tuple[Unit, ...]] = (
     Unit(value="g", label="g", factor=1e-3),
     Unit(value="kg", label="kg", factor=1.0),
 )

@@ -52,7 +52,9 @@ def newton(
             step_x = (state.charge_u * state.strength - state.charge * state.strength_u) / slope
             step_u = (state.charge * state.strength_x - state.charge_x * state.strength) / slope
         # Hopping to and fro across a steep part: halve the last hop instead.
-        hopping = (step_x * last < 0.0) & (np.abs(step_x) > 0.5 * np.abs(last))
+        # A last, tiny step may well turn round.
+        far = np.maximum(0.5 * np.abs(last), SETTLED)
+        hopping = (step_x * last < 0.0) & (np.abs(step_x) > far)
         last = np.where(hopping, -0.5 * last, np.clip(step_x, -LONGEST_STEP, LONGEST_STEP))
         x = x + last
         u = u + np.clip(step_u, -2.0, 2.0)

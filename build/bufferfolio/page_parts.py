@@ -140,8 +140,7 @@ def _reference(law: ReferenceConstants) -> tuple[str, ...]:
     enthalpy, heat_capacity = law.enthalpy, law.heat_capacity
     return (
         f"pK {plain(law.pK, 6)} at {celsius(law.temperature)} °C",
-        "ΔH° "
-        + ("not stated" if enthalpy is None else f"{plain(enthalpy / 1000.0, 6)} kJ/mol"),
+        "ΔH° " + ("not stated" if enthalpy is None else f"{plain(enthalpy / 1000.0, 6)} kJ/mol"),
         "ΔCp° "
         + ("not stated" if heat_capacity is None else f"{plain(heat_capacity, 6)} J/(mol K)"),
     )

@@ -12,12 +12,12 @@ from bufferfolio import resources
 from bufferfolio.activity import MODELS
 from bufferfolio.bokeh_figures import bokeh_script, skeletons_script
 from bufferfolio.definitions import Library
+from bufferfolio.explorations import exploration_of
 from bufferfolio.family_contexts import FamilyContext, family_context
 from bufferfolio.figure_styles import stylesheet
 from bufferfolio.formatting import FILTERS
 from bufferfolio.page_parts import numbering
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
-from bufferfolio.explorations import exploration_of
 from bufferfolio.sheets import sheet_of
 from bufferfolio.source_contexts import GENERAL_WORKS, HOW_KNOWN, source_rows
 from bufferfolio.writing import replace_folder

@@ -1,4 +1,4 @@
-"""What the template of a formulation's sheet is given: numbers and words, nothing left to compute."""
+"""What the template of a formulation's sheet is given: nothing is left to compute."""
 
 import hashlib
 import math
@@ -122,7 +122,9 @@ def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
     """Return everything on the page of one formulation."""
     subject, reference = sheet.subject, sheet.reference
     formulation = subject.formulation
-    figures = [figure for draw in SHEET_FIGURES.values() if (figure := draw(sheet)) is not None]
+    drawn = [draw(sheet) for draw in SHEET_FIGURES.values()]
+    # Plain water has no forms of a family to draw, and a solution without titrants no titration.
+    figures = [figure for figure in drawn if figure and (figure.series or figure.cells)]
     present = [
         family
         for family, total in zip(subject.mixture.families, subject.mixture.totals, strict=True)
@@ -201,9 +203,7 @@ def _side(sheet: Sheet, side: Side) -> SideRow:
     contrast, dose = math.nan, ""
     if reached:
         nothing = replace(subject, mixture=pure_water(subject.mixture))
-        after = state_at(
-            nothing, sheet.reference.temperature, additions=[(added, side.reserve)]
-        )
+        after = state_at(nothing, sheet.reference.temperature, additions=[(added, side.reserve)])
         contrast = after.pH
         dose = (
             mass(side.reserve * added.mass, 3)

@@ -85,7 +85,7 @@ def _use(citation: Citation, what: str, link: str) -> UseRow:
 HOW_KNOWN: Final[Mapping[str, str]] = {
     "seen": "read in the work itself",
     "seen-secondary": "read in another work that quotes it",
-    "recalled": "carried over from memory; compare it with the work before relying on its last figure",
+    "recalled": "carried over from memory; compare it with the work before relying on it",
     "computed": "computed from other values",
 }
 

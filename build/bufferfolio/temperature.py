@@ -75,7 +75,7 @@ def constants_at(families: Sequence[Family], temperature: FloatArray) -> Constan
             # A thousandth of a kelvin: 0 °C typed in other units must not fall outside.
             in_range &= (kelvin > low - 1e-3) & (kelvin < high + 1e-3)
     pK = tuple(
-        np.array([pK_at(step, kelvin) for step in family.steps]).reshape(-1, *kelvin.shape)
+        np.array([pK_at(step, kelvin) for step in family.steps]).reshape(len(family.steps), *kelvin.shape)
         for family in families
     )
     return Constants(

@@ -13,17 +13,36 @@
   /** Some of a figure's numbers: every so many points, and the last.
    * @param {import("./figures.js").Figure} figure @returns {NumbersTable} */
   function numbersTable(figure) {
-    const { fixed, plain } = bf.formatting;
+    const { plain } = bf.formatting;
     if (figure.cells !== null) return ofMap(figure, figure.cells);
     if (figure.series.length === 0) return { head: [bf.figures.axisTitle(figure.x)], rows: [] };
-    const decimals = decimalsOf(figure.y);
     const x = figure.series[0].x;
+    if (!figure.series.every((series) => same(series.x, x))) {
+      return oneAfterTheOther(figure);
+    }
     return {
       head: [bf.figures.axisTitle(figure.x), ...figure.series.map((series) => series.label)],
       rows: thinned(x.length, MOST_ROWS).map((at) => [
-        plain(x[at]), ...figure.series.map((series) => fixed(number(series.y[at]), decimals)),
+        plain(x[at]), ...figure.series.map((series) => textOf(number(series.y[at]), figure.y)),
       ]),
     };
+  }
+
+  /** Lines that do not share their points. */
+  function oneAfterTheOther(figure) {
+    const { plain } = bf.formatting;
+    const { axisTitle } = bf.figures;
+    const most = Math.max(2, Math.floor(MOST_ROWS / figure.series.length));
+    return {
+      head: ["", axisTitle(figure.x), axisTitle(figure.y)],
+      rows: figure.series.flatMap((series) => thinned(series.x.length, most).map((at) => [
+        series.label, plain(series.x[at]), textOf(number(series.y[at]), figure.y),
+      ])),
+    };
+  }
+
+  function same(one, other) {
+    return one.length === other.length && one.every((each, at) => each === other[at]);
   }
 
   function ofMap(figure, cells) {
@@ -63,12 +82,13 @@
     return found.map((centre) => (Math.abs(centre) < tiny ? 0 : centre));
   }
 
-  /** How many decimals are finer than a reader could take from the picture. */
-  function decimalsOf(axis) {
+  /** A value written more finely than a reader could take it from the picture. */
+  function textOf(value, axis) {
+    if (axis.scale === "log") return bf.formatting.significant(value);
     const finest = (axis.high - axis.low) / 200;
     let decimals = 0;
     while (decimals < MOST_DECIMALS && bf.figure_ticks.powerOfTen(-decimals) > finest) decimals += 1;
-    return decimals;
+    return bf.formatting.fixed(value, decimals);
   }
 
   bf.figure_tables = { numbersTable, centres };

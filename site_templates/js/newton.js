@@ -54,7 +54,9 @@
       const stepX = (state.charge_u * state.strength - state.charge * state.strength_u) / slope;
       const stepU = (state.charge * state.strength_x - state.charge_x * state.strength) / slope;
       // Hopping to and fro across a steep part: halve the last hop instead.
-      const hopping = stepX * last < 0 && Math.abs(stepX) > 0.5 * Math.abs(last);
+      // A last, tiny step may well turn round.
+      const far = Math.max(0.5 * Math.abs(last), SETTLED);
+      const hopping = stepX * last < 0 && Math.abs(stepX) > far;
       last = hopping ? -0.5 * last : clipped(stepX, LONGEST_STEP);
       x += last;
       u += clipped(stepU, 2);

@@ -121,7 +121,7 @@
       const after = bf.subjects.stateAt(water, temperature, 1, [[added, reserve]]);
       texts.set(name, significant(reserve * MILLI));
       texts.set(name + "_volume", added.volume === null
-        ? mass(reserve * added.mass) : volume(reserve * added.volume));
+        ? mass(reserve * added.mass, 3) : volume(reserve * added.volume, 3));
       texts.set("contrast_" + direction, fixed(after.pH, 2));
     }
   }

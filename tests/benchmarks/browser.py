@@ -132,8 +132,10 @@ def report(name: str, measured: Sequence[Mapping[str, float]]) -> str:
             for values, aim in zip(measured, target.milliseconds, strict=True)
         ]
         lines.append(f"{target.name:28}{cells[0]:>20}{cells[1]:>20}")
-    for extra in ("all drawings in sight", "all plots in sight"):
-        lines.append(f"{extra:28}{measured[0][extra]:>20.0f}{measured[1][extra]:>20.0f}")
+    lines += [
+        f"{extra:28}{measured[0][extra]:>20.0f}{measured[1][extra]:>20.0f}"
+        for extra in ("all drawings in sight", "all plots in sight")
+    ]
     return "\n".join(lines) + "\n"
 
 

@@ -1,0 +1,268 @@
+"""How fast the solver is beside general root finders on the same problems, and what it costs in memory.
+
+    python tests/benchmarks/solver.py [--quick]
+
+Ratios are taken within one run, the contestants turn by turn, and the median of the turns counts.
+The general ways are written as well as they allow: every mixture at once (`find_root`) or one by one
+(`brentq`), the charge balance in its nearly straight logarithmic form, the ionic strength found in
+an outer loop that begins at the ideal solution and ends when it changes by less than 1e-10.
+"""
+
+import argparse
+import resource
+import subprocess
+import sys
+import time
+from collections.abc import Callable
+from pathlib import Path
+from statistics import median
+
+import numpy as np
+from scipy.optimize import brentq
+from scipy.optimize.elementwise import find_root
+
+sys.path[:0] = [str(Path(__file__).resolve().parents[1])]
+
+from solutions import CHLORIDE, SODIUM, constants_of, made_up_family, mixture_of
+
+from bufferfolio.activity import MODELS
+from bufferfolio.equilibrium import solve
+from bufferfolio.speciation import Mixture
+from bufferfolio.temperature import Constants
+
+DAVIES = MODELS["davies"]
+TOLERANCE = 1e-10  # relative change of ionic strength
+LOWEST, HIGHEST = -2.0, 16.0  # pH between which every answer lies
+AGREEMENT = 1e-8  # in pH, between all ways
+AT_LEAST_FIND_ROOT, AT_LEAST_BRENTQ = 20.0, 1000.0
+MOST_MEMORY = 1e9  # bytes at a million points
+STEEPEST = 1.5  # how much dearer a point of a million may be than a point of ten thousand
+
+PHOSPHORIC = made_up_family("phosphoric", 0, [2.148, 7.198, 12.35])
+SIX = (
+    PHOSPHORIC,
+    made_up_family("citric", 0, [3.128, 4.761, 6.396]),
+    made_up_family("glycine", 1, [2.351, 9.780]),
+    made_up_family("acetic", 0, [4.756]),
+    made_up_family("ammonium", 1, [9.245]),
+    made_up_family("carbonic", 0, [6.352, 10.329]),
+)
+
+
+def phosphate(count: int) -> Mixture:
+    """Random phosphate mixtures: 1e-5 to 0.3 mol/kg, 0 to 4 equivalents of strong base."""
+    random = np.random.default_rng(1)
+    total = 10.0 ** random.uniform(-5.0, np.log10(0.3), count)
+    return mixture_of([(PHOSPHORIC, total)], [(SODIUM, total * random.uniform(0.0, 4.0, count))])
+
+
+def six_families(count: int) -> Mixture:
+    """Random mixtures of six families with a strong acid or base, 1e-4 to 0.1 mol/kg each."""
+    random = np.random.default_rng(2)
+    amounts = 10.0 ** random.uniform(-4.0, -1.0, (8, count))
+    inside = list(zip(SIX, amounts[:6], strict=True))
+    return mixture_of(inside, [(SODIUM, amounts[6]), (CHLORIDE, amounts[7])])
+
+
+def charge_ratio(
+    pH: np.ndarray,
+    term: np.ndarray,
+    hydroxide: np.ndarray,
+    plus: np.ndarray,
+    minus: np.ndarray,
+    *rows: np.ndarray,
+    charges: tuple[tuple[int, int], ...],
+) -> tuple[np.ndarray, np.ndarray]:
+    """Return ln(negative over positive charge), and Σ z² m of what is not a strong ion.
+
+    `rows` are, family by family, the total and then K1, K1 K2 …; `term` is D of log γ = −z² D.
+    """
+    h, g = 10.0**-pH, 10.0**term
+    hydrogen, hydroxyl = h * g, hydroxide / h * g
+    plus, minus, squares = plus + hydrogen, minus + hydroxyl, hydrogen + hydroxyl
+    powers = [np.ones_like(h), 1.0 / h]
+    g4 = g**4
+    gammas = {0: 1.0, 1: g, 2: g4, 3: g4 * g4 * g}
+    start = 0
+    for charge, steps in charges:
+        total, products = rows[start], rows[start + 1 : start + 1 + steps]
+        start += 1 + steps
+        while len(powers) <= steps:
+            powers.append(powers[-1] * powers[1])
+        shares = [gammas[abs(charge)] * powers[0]]
+        for lost, product in enumerate(products, start=1):
+            shares.append(product * powers[lost] * gammas[abs(charge - lost)])
+        scale = total / sum(shares)
+        for lost, share in enumerate(shares):
+            z = charge - lost
+            if z > 0:
+                plus = plus + z * share * scale
+            elif z < 0:
+                minus = minus - z * share * scale
+            squares = squares + z * z * share * scale
+    return np.log(minus / plus), squares
+
+
+def rows_of(mixture: Mixture, constants: Constants) -> tuple[list[np.ndarray], dict[str, object]]:
+    """Return what `charge_ratio` takes after pH and term."""
+    net = mixture.strong_charge
+    rows = [10.0**-constants.pKw, np.maximum(net, 0.0), np.maximum(-net, 0.0)]
+    for total, pK in zip(mixture.totals, constants.pK, strict=True):
+        rows += [total, *(10.0 ** -np.cumsum(pK, axis=0))]
+    charges = tuple((family.charge, len(family.steps)) for family in mixture.families)
+    return rows, {"charges": charges}
+
+
+def by_find_root(mixture: Mixture, constants: Constants) -> np.ndarray:
+    """All mixtures at once; those whose ionic strength stands still leave the outer loop."""
+    rows, options = rows_of(mixture, constants)
+    n = mixture.totals.shape[1]
+    strong, coefficient = mixture.strong_strength, constants.debye_huckel
+    pH, strength = np.full(n, 7.0), np.zeros(n)
+    active = np.arange(n)
+
+    def residual(pH: np.ndarray, term: np.ndarray, *rows: np.ndarray) -> np.ndarray:
+        return charge_ratio(pH, term, *rows, **options)[0]
+
+    reach = np.full(n, 9.0)
+    for _ in range(200):
+        here = [row[active] for row in rows]
+        term, _ = DAVIES.long_range(coefficient[active], strength[active])
+        # After the first turns the answer is near: a bracket about it saves most of the work.
+        low, high = pH[active] - reach[active], pH[active] + reach[active]
+        low = np.where(residual(low, term, *here) < 0.0, low, LOWEST)
+        high = np.where(residual(high, term, *here) > 0.0, high, HIGHEST)
+        tolerances = {"xatol": 1e-300, "xrtol": 1e-12, "fatol": 1e-300, "frtol": 1e-300}
+        found = find_root(residual, (low, high), args=(term, *here), tolerances=tolerances).x
+        _, squares = charge_ratio(found, term, *here, **options)
+        following = 0.5 * (strong[active] + squares)
+        change = np.abs(following - strength[active])
+        reach[active] = np.abs(found - pH[active]) + 1e-9
+        pH[active], strength[active] = found, following
+        active = active[change > TOLERANCE * following]
+        if not active.size:
+            return pH
+    raise RuntimeError("the outer loop does not end")
+
+
+def by_brentq(mixture: Mixture, constants: Constants, count: int) -> np.ndarray:
+    """One mixture after the other, in plain numbers."""
+    rows, options = rows_of(mixture, constants)
+    result = np.empty(count)
+    for k in range(count):
+        here = [float(row[k]) for row in rows]
+        strong = float(mixture.strong_strength[k])
+        coefficient = float(constants.debye_huckel[k])
+        strength, last = 0.0, np.inf
+        while abs(strength - last) > TOLERANCE * strength:
+            last = strength
+            root = strength**0.5
+            term = coefficient * (root / (1.0 + root) - 0.3 * strength)
+
+            def residual(pH: float, term: float = term, here: list[float] = here) -> float:
+                return float(charge_ratio(pH, term, *here, **options)[0])
+
+            result[k] = brentq(residual, LOWEST, HIGHEST, xtol=1e-12)
+            strength = 0.5 * (strong + float(charge_ratio(result[k], term, *here, **options)[1]))
+    return result
+
+
+def seconds(work: Callable[[], np.ndarray]) -> tuple[float, np.ndarray]:
+    """Return how long some work took, and its result."""
+    start = time.perf_counter()
+    result = work()
+    return time.perf_counter() - start, result
+
+
+def compare(name: str, mixture: Mixture, turns: int, one_by_one: int) -> tuple[float, float]:
+    """Print and return both ratios for one set of mixtures."""
+    constants = constants_of(mixture)
+    count = mixture.totals.shape[1]
+    ours, theirs, singly = [], [], []
+    solve(mixture, constants, DAVIES)  # the first call pays for imports and threads
+    for _ in range(turns):
+        taken = [seconds(lambda: solve(mixture, constants, DAVIES).pH) for _ in range(3)]
+        ours.append(median(t for t, _ in taken) / count)
+        pH = taken[0][1]
+        spent, other = seconds(lambda: by_find_root(mixture, constants))
+        theirs.append(spent / count)
+        assert np.max(np.abs(other - pH)) < AGREEMENT
+        spent, single = seconds(lambda: by_brentq(mixture, constants, one_by_one))
+        singly.append(spent / one_by_one)
+        assert np.max(np.abs(single - pH[:one_by_one])) < AGREEMENT
+    array_ratio = median(b / a for a, b in zip(ours, theirs, strict=True))
+    single_ratio = median(b / a for a, b in zip(ours, singly, strict=True))
+    print(
+        f"{name}: {count} mixtures\n"
+        f"  this solver                    {1.0 / median(ours):10,.0f} a second\n"
+        f"  find_root, all at once         {1.0 / median(theirs):10,.0f} a second, "
+        f"ratio {array_ratio:,.0f} (at least {AT_LEAST_FIND_ROOT:.0f})\n"
+        f"  brentq, one by one             {1.0 / median(singly):10,.0f} a second, "
+        f"ratio {single_ratio:,.0f} (at least {AT_LEAST_BRENTQ:,.0f})",
+        flush=True,
+    )
+    return array_ratio, single_ratio
+
+
+def growth(sizes: tuple[int, ...]) -> float:
+    """Print seconds against points, and return how much dearer the last points are than 1e4 ones."""
+    each = {}
+    for size in sizes:
+        mixture = phosphate(size)
+        constants = constants_of(mixture)
+        turns = 7 if size <= 100_000 else 3
+        each[size] = median(
+            seconds(lambda m=mixture, c=constants: solve(m, c, DAVIES).pH)[0] / size
+            for _ in range(turns)
+        )
+        print(f"  {size:9,} points  {each[size] * size:8.4f} s  {each[size] * 1e6:6.2f} µs a point")
+    return each[sizes[-1]] / each[10_000]
+
+
+def memory(points: int) -> float:
+    """Return the most memory that a fresh process held while it solved that many points, in bytes."""
+    command = [sys.executable, __file__, "--solve", str(points)]
+    return float(subprocess.run(command, check=True, capture_output=True, text=True).stdout)
+
+
+def solve_and_tell(points: int) -> None:
+    """Solve, and print the largest resident size of this process."""
+    mixture = phosphate(points)
+    solve(mixture, constants_of(mixture), DAVIES)
+    most = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss
+    print(most * (1 if sys.platform == "darwin" else 1024))
+
+
+def main() -> int:
+    """Run everything and return 1 where a requirement is missed."""
+    parser = argparse.ArgumentParser(description=__doc__.splitlines()[0])
+    parser.add_argument("--quick", action="store_true", help="fewer turns and points")
+    parser.add_argument("--solve", type=int, help=argparse.SUPPRESS)
+    chosen = parser.parse_args()
+    if chosen.solve:
+        solve_and_tell(chosen.solve)
+        return 0
+    turns, one_by_one = (3, 60) if chosen.quick else (5, 300)
+    ratios = [
+        compare("one family (phosphate)", phosphate(40_000), turns, one_by_one),
+        compare("six families", six_families(40_000), turns, one_by_one // 3),
+    ]
+    print("time against points")
+    sizes = (1_000, 10_000, 100_000) if chosen.quick else (1_000, 10_000, 100_000, 1_000_000)
+    steepness = growth(sizes)
+    largest = memory(sizes[-1])
+    print(f"  the last points cost {steepness:.2f} of those among 10,000 (at most {STEEPEST})")
+    print(f"  memory at {sizes[-1]:,} points: {largest / 1e6:,.0f} MB (at most 1,000)")
+    array_ratios, single_ratios = zip(*ratios, strict=True)
+    missed = [
+        *("find_root" for ratio in array_ratios if ratio < AT_LEAST_FIND_ROOT),
+        *("brentq" for ratio in single_ratios if ratio < AT_LEAST_BRENTQ),
+        *(["growth"] if steepness > STEEPEST else []),
+        *(["memory"] if largest > MOST_MEMORY else []),
+    ]
+    print("missed: " + ", ".join(missed) if missed else "every requirement is met")
+    return 1 if missed else 0
+
+
+if __name__ == "__main__":
+    raise SystemExit(main())
