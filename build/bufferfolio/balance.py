@@ -10,7 +10,7 @@ Everything here is flat: n mixtures along the last axis, constants as K and not 
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from typing import Final
+from typing import Final, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -46,6 +46,18 @@ class Problem:
         return int(self.net.size)
 
 
+class Sum(NamedTuple):
+    """A sum over species, n, mol/kg, with its derivatives by x = ln a(H+) and by ln g."""
+
+    value: FloatArray
+    by_x: FloatArray
+    by_g: FloatArray
+
+    def and_(self, other: "Sum") -> "Sum":
+        """Return both together."""
+        return Sum(self.value + other.value, self.by_x + other.by_x, self.by_g + other.by_g)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Sums:
     """Sums over everything in the water, each n, with derivatives by x = ln a(H+) and u = ln I."""
@@ -67,16 +79,6 @@ class Residuals:
     charge_u: FloatArray
     strength_x: FloatArray
     strength_u: FloatArray
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Slopes:
-    """Derivatives of the charge and of Σ z² m by x = ln a(H+) and u = ln I, each n, mol/kg."""
-
-    charge_x: FloatArray
-    charge_u: FloatArray
-    squares_x: FloatArray
-    squares_u: FloatArray
 
 
 def two_sum(a: FloatArray, b: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -189,11 +191,13 @@ def weights(charge: int, K: FloatArray, h: FloatArray, g: FloatArray) -> list[Fl
     """
     square = g * g
     # z² grows by 1 − 2 z on losing a proton; each further step adds 2 to that.
-    ratio = g ** (1 - 2 * charge) / h
-    forms = [np.ones_like(h)]
-    for constant in K:
-        forms.append(forms[-1] * (constant * ratio))
+    ratio = g / h
+    for _ in range(abs(charge)):
+        ratio = ratio / square if charge > 0 else ratio * square
+    forms = [np.ones_like(h), K[0] * ratio]
+    for constant in K[1:]:
         ratio = ratio * square
+        forms.append(forms[-1] * (constant * ratio))
     return forms
 
 
@@ -230,73 +234,87 @@ def sums(problem: Problem, x: FloatArray, u: FloatArray) -> Sums:
     h = np.exp(x)
     hydrogen, hydroxide = problem.hydrogen * h * g, problem.hydroxide / h * g
     both = hydrogen + hydroxide
-    values = [
-        np.maximum(problem.net, 0.0) + hydrogen + TINY,
-        np.maximum(-problem.net, 0.0) + hydroxide + TINY,
-        problem.strength + both,
-    ]
-    by_x = [hydrogen, -hydroxide, hydrogen - hydroxide]
-    by_g = [hydrogen, hydroxide, both]
+    plus = Sum(np.maximum(problem.net, TINY) + hydrogen, hydrogen, hydrogen)
+    minus = Sum(np.maximum(-problem.net, TINY) + hydroxide, -hydroxide, hydroxide)
+    squares = Sum(problem.strength + both, hydrogen - hydroxide, both)
     for charge, K, total in zip(problem.charges, problem.K, problem.totals, strict=True):
-        forms = weights(charge, K, h, g)
-        scale = total / sum(forms)
-        amounts = [form * scale for form in forms]
-        z = [charge - lost for lost in range(len(forms))]
-        by_sign = [max(q, 0) for q in z], [max(-q, 0) for q in z], [q * q for q in z]
-        lost_mean = _moment(range(len(forms)), amounts) / (total + TINY)
-        square_mean = _moment(by_sign[2], amounts) / (total + TINY)
-        for row, weight in enumerate(by_sign):
-            if any(weight):
-                mean = _moment(weight, amounts)
-                with_lost = _moment([w * j for j, w in enumerate(weight)], amounts)
-                with_square = _moment([w * q * q for w, q in zip(weight, z, strict=True)], amounts)
-                values[row] = values[row] + mean
-                by_x[row] = by_x[row] - (with_lost - mean * lost_mean)
-                by_g[row] = by_g[row] + (with_square - mean * square_mean)
+        positive, negative, square = _family_sums(charge, weights(charge, K, h, g), total)
+        plus = plus if positive is None else plus.and_(positive)
+        minus = minus if negative is None else minus.and_(negative)
+        squares = squares.and_(square)
     return Sums(
-        plus=values[0],
-        minus=values[1],
-        squares=values[2],
-        by_x=(by_x[0], by_x[1], by_x[2]),
-        by_u=(g_u * by_g[0], g_u * by_g[1], g_u * by_g[2]),
+        plus=plus.value,
+        minus=minus.value,
+        squares=squares.value,
+        by_x=(plus.by_x, minus.by_x, squares.by_x),
+        by_u=(g_u * plus.by_g, g_u * minus.by_g, g_u * squares.by_g),
     )
 
 
-def slopes(problem: Problem, x: FloatArray, u: FloatArray) -> Slopes:
-    """Return derivatives that stay good where salt hides little buffering.
+def _family_sums(
+    charge: int, forms: Sequence[FloatArray], total: FloatArray
+) -> tuple[Sum | None, Sum | None, Sum]:
+    """Return one family's positive charge, negative charge and Σ z² m; None where it has none.
 
-    `sums` takes a mean of squares minus a square of means, which is enough to find a root; here
-    every form counts by its distance from the mean, so that nothing large cancels.
-
-    Shapes: x and u n; results n.
-    Units: x = ln a(H+), u = ln (I kg/mol); results mol/kg.
-    Raises: nothing.
-    Source: as `sums`.
+    Everything follows from the moments Σ j^k m of the number j of protons lost, with z = z0 − j.
     """
-    term, slope = problem.long_range(problem.coefficient, np.exp(u))
-    g, g_u = np.exp(LN10 * term), LN10 * slope
-    h = np.exp(x)
-    hydrogen, hydroxide = problem.hydrogen * h * g, problem.hydroxide / h * g
-    charge_x = squares_g = hydrogen + hydroxide
-    charge_g = squares_x = hydrogen - hydroxide
-    for charge, K, total in zip(problem.charges, problem.K, problem.totals, strict=True):
-        forms = weights(charge, K, h, g)
-        scale = total / sum(forms)
-        amounts = [form * scale for form in forms]
-        squares = [(charge - lost) ** 2 for lost in range(len(forms))]
-        lost_mean = _moment(range(len(forms)), amounts) / (total + TINY)
-        square_mean = _moment(squares, amounts) / (total + TINY)
-        for lost, (square, amount) in enumerate(zip(squares, amounts, strict=True)):
-            lost_away, square_away = lost - lost_mean, square - square_mean
-            charge_x = charge_x + amount * lost_away * lost_away
-            charge_g = charge_g - amount * lost_away * square_away
-            squares_x = squares_x - amount * lost_away * square_away
-            squares_g = squares_g + amount * square_away * square_away
-    return Slopes(
-        charge_x=charge_x, charge_u=g_u * charge_g, squares_x=squares_x, squares_u=g_u * squares_g
-    )
+    scale = total / added(forms)
+    amounts = [scale, *(form * scale for form in forms[1:])]
+    one, two, three, four = _moments(amounts)
+    share = 1.0 / (total + TINY)
+    mean, mean_square = one * share, two * share
+    jj = two - one * mean  # C cov(j, j), and so on
+    jq, qq = three - one * mean_square, four - two * mean_square
+    if charge:
+        jq, qq = jq - 2 * charge * jj, qq - 4 * charge * jq + 4 * charge * charge * jj
+    if charge <= 0:
+        negative = one - charge * total if charge else one
+        squares = two - 2 * charge * one + charge * charge * total if charge else two
+        return None, Sum(negative, -jj, jq), Sum(squares, -jq, qq)
+    # Where forms of both signs meet, nothing may be left to a difference.
+    z = [charge - lost for lost in range(len(forms))]
+    of_squares = Sum(weighted([q * q for q in z], amounts), -jq, qq)
+    positive = weighted([max(q, 0) for q in z], amounts)
+    if z[-1] >= 0:
+        return Sum(positive, jj, -jq), None, of_squares
+    by_x = positive * mean - weighted([j * max(q, 0) for j, q in enumerate(z)], amounts)
+    by_g = weighted([max(q, 0) ** 3 for q in z], amounts) - positive * of_squares.value * share
+    negative = weighted([max(-q, 0) for q in z], amounts)
+    return Sum(positive, by_x, by_g), Sum(negative, by_x - jj, by_g + jq), of_squares
 
 
-def _moment(values: Sequence[int], amounts: Sequence[FloatArray]) -> FloatArray:
-    terms = [value * amount for value, amount in zip(values, amounts, strict=True) if value]
-    return sum(terms[1:], start=terms[0]) if terms else np.zeros_like(amounts[0])
+def _moments(amounts: Sequence[FloatArray]) -> tuple[FloatArray, ...]:
+    """Return Σ j^k m for k = 1 … 4."""
+    moments = [amounts[1]] * 4
+    for lost, amount in enumerate(amounts[2:], 2):
+        for power in range(4):
+            amount = amount * float(lost)
+            moments[power] = moments[power] + amount
+    return tuple(moments)
+
+
+def added(terms: Sequence[FloatArray]) -> FloatArray:
+    """Return the sum of some arrays.
+
+    Shapes: terms S each, at least one; result S.
+    Units: those of the terms.
+    Raises: nothing.
+    Source: definition.
+    """
+    return sum(terms[1:], start=terms[0])
+
+
+def weighted(factors: Sequence[int], amounts: Sequence[FloatArray]) -> FloatArray:
+    """Return Σ factor · amount, with no work for factors of 0 and 1.
+
+    Shapes: amounts S each; result S.
+    Units: those of the amounts.
+    Raises: nothing.
+    Source: definition.
+    """
+    terms = [
+        amount if factor == 1 else amount * float(factor)
+        for factor, amount in zip(factors, amounts, strict=True)
+        if factor
+    ]
+    return added(terms) if terms else np.zeros_like(amounts[0])

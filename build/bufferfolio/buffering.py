@@ -11,9 +11,10 @@ from typing import Final, Literal
 import numpy as np
 
 from bufferfolio.activity import ActivityModel
-from bufferfolio.balance import Problem, Slopes, prepare, slopes, sums, with_offsets
+from bufferfolio.balance import Problem, prepare, sums, with_offsets
 from bufferfolio.definitions import Interaction
 from bufferfolio.equilibrium import Equilibrium
+from bufferfolio.slopes import Slopes, slopes
 from bufferfolio.speciation import Forms, Mixture, forms_at, interaction_matrix, stacked
 from bufferfolio.temperature import LN10, Constants
 from bufferfolio.water import FloatArray

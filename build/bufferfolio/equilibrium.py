@@ -25,7 +25,7 @@ from bufferfolio.temperature import LN10, Constants
 from bufferfolio.water import FloatArray
 
 # Smaller blocks waste time on call overhead, larger ones fall out of the processor's cache.
-BLOCK: Final = 4096
+BLOCK: Final = 8192
 OFFSET_TOLERANCE: Final = 1e-13  # in log10 of an activity coefficient
 OFFSET_ROUNDS: Final = 200
 

@@ -7,6 +7,7 @@ import numpy as np
 
 from bufferfolio.explorations import Exploration
 from bufferfolio.figures import Axis, Figure, Series
+from bufferfolio.formatting import fixed, plain, significant
 from bufferfolio.plots import MILLI, PH, styled
 from bufferfolio.water import ZERO_CELSIUS
 
@@ -45,7 +46,7 @@ def _crossing_words(exploration: Exploration) -> str:
         share = difference[before] / (difference[before] - difference[after])
         crossing = sweep.pH[before] + share * (sweep.pH[after] - sweep.pH[before])
         acid, base = family.species[step].label, family.species[step + 1].label
-        parts.append(f"{acid} and {base} are equal at pH {crossing:.2f}")
+        parts.append(f"{acid} and {base} are equal at pH {fixed(crossing, 2)}")
     return ("; ".join(parts) if parts else "One form prevails from pH 0 to 14") + "."
 
 
@@ -71,7 +72,7 @@ def explorer_logs(exploration: Exploration) -> Figure:
         marks=(),
         cells=None,
         summary=(
-            f"Forms of {family.label} at {exploration.total:g} mol/kg in all, with H⁺ and OH⁻."
+            f"Forms of {family.label} at {plain(exploration.total)} mol/kg in all, with H⁺ and OH⁻."
         ),
     )
 
@@ -102,8 +103,8 @@ def explorer_capacity(exploration: Exploration) -> Figure:
         marks=(),
         cells=None,
         summary=(
-            f"Between pH 2 and 12 it buffers best at pH {sweep.pH[best]:.1f}: "
-            f"{sweep.capacity[best] * MILLI:.3g} mmol/kg per pH unit."
+            f"Between pH 2 and 12 it buffers best at pH {fixed(sweep.pH[best], 1)}: "
+            f"{significant(sweep.capacity[best] * MILLI)} mmol/kg per pH unit."
         ),
     )
 

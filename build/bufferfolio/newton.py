@@ -55,9 +55,9 @@ def newton(
         # A last, tiny step may well turn round.
         far = np.maximum(0.5 * np.abs(last), SETTLED)
         hopping = (step_x * last < 0.0) & (np.abs(step_x) > far)
-        last = np.where(hopping, -0.5 * last, np.clip(step_x, -LONGEST_STEP, LONGEST_STEP))
+        last = np.where(hopping, -0.5 * last, _clipped(step_x, LONGEST_STEP))
         x = x + last
-        u = u + np.clip(step_u, -2.0, 2.0)
+        u = u + _clipped(step_u, 2.0)
         # A negative slope is a root that dilution does not lead to: left to the bracket.
         settled = (np.abs(step_x) < SETTLED) & (np.abs(step_u) < SETTLED) & (slope > 0.0)
         if not settled.any():
@@ -72,6 +72,10 @@ def newton(
     if loose.any():
         found_x[loose] = sharpened(part(whole, loose), found_x[loose], found_u[loose])
     return found_x, found_u, active
+
+
+def _clipped(step: FloatArray, longest: float) -> FloatArray:
+    return np.minimum(np.maximum(step, -longest), longest)
 
 
 def sharpened(problem: Problem, x: FloatArray, u: FloatArray) -> FloatArray:

@@ -59,7 +59,7 @@ def write_site(library: Library, out: Path, progress: Progress) -> tuple[PageRep
         sheets, reports = _write_sheets(writer, library, numbers, progress)
         families = _write_explorers(writer, library, numbers, progress)
         progress("index, sources, method")
-        index = Shell(page="index", section="formulations", top="", scripts=page_scripts())
+        index = Shell(page="index", section="formulations", top="", scripts=INDEX_SCRIPTS)
         writer.write("index.html", "index.html", index, sheets=_by_title(sheets), families=families)
         shell = Shell(page="sources", section="sources", top="", scripts=())
         writer.write(
@@ -94,7 +94,7 @@ def _write_sheets(
     writer: Writer, library: Library, numbers: Mapping[str, int], progress: Progress
 ) -> tuple[tuple[SheetContext, ...], tuple[PageReport, ...]]:
     contexts, reports = [], []
-    shell = Shell(page="sheet", section="formulations", top="../", scripts=page_scripts())
+    shell = Shell(page="sheet", section="formulations", top="../", scripts=SCRIPTS)
     for key, formulation in sorted(library.formulations.items()):
         progress(formulation.title)
         start = time.perf_counter()
@@ -121,7 +121,7 @@ def _write_explorers(
     writer: Writer, library: Library, numbers: Mapping[str, int], progress: Progress
 ) -> tuple[FamilyContext, ...]:
     contexts = []
-    shell = Shell(page="explorer", section="families", top="../", scripts=page_scripts())
+    shell = Shell(page="explorer", section="families", top="../", scripts=SCRIPTS)
     for key, family in sorted(library.families.items()):
         progress(family.label)
         context = family_context(exploration_of(family), library, numbers)
@@ -140,7 +140,7 @@ def write_assets(folder: Path) -> None:
     templates = resources.templates()
     style = (templates / "css" / "site.css").read_text(encoding="utf-8")
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
-    for name in page_scripts():
+    for name in sorted({*SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
         (folder / f"{name}.js").write_text(script, encoding="utf-8", newline="\n")
     (folder / "skeletons.js").write_text(skeletons_script(), encoding="utf-8", newline="\n")
@@ -162,12 +162,6 @@ def environment_of(templates: Path) -> Environment:
     return environment
 
 
-def page_scripts() -> tuple[str, ...]:
-    """Return the scripts of a page that computes, each after what it needs."""
-    folder = resources.templates() / "js"
-    return tuple(name for name in SCRIPTS if (folder / f"{name}.js").is_file())
-
-
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Section:
     """One entry of the navigation."""
@@ -184,6 +178,7 @@ SECTIONS: Final = (
     Section(key="method", label="Method", path="method.html"),
 )
 
+# Each after those that it needs as soon as it is read.
 SCRIPTS: Final = (
     "water",
     "temperature",
@@ -199,9 +194,9 @@ SCRIPTS: Final = (
     "subjects",
     "sheets",
     "explorations",
-    "contours",
     "figure_ticks",
     "line_paths",
+    "contours",
     "label_places",
     "figures",
     "figure_layout",
@@ -213,13 +208,14 @@ SCRIPTS: Final = (
     "plots",
     "explorer_plots",
     "panel_state",
-    "panel_inputs",
-    "panel_tables",
-    "panel_tools",
-    "panel_index",
     "panel_checks",
+    "panel_inputs",
     "panel_answers",
-    "panel_figures",
     "panel_bokeh",
+    "panel_tools",
+    "panel_tables",
+    "panel_figures",
     "panel",
 )
+
+INDEX_SCRIPTS: Final = ("panel_state", "panel_index")

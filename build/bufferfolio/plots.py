@@ -11,6 +11,7 @@ import numpy as np
 
 from bufferfolio.definitions import Interval
 from bufferfolio.figures import Axis, Cells, Figure, Mark, Series
+from bufferfolio.formatting import fixed, plain, signed, significant
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.water import ZERO_CELSIUS, FloatArray
 
@@ -38,7 +39,7 @@ def fractions_figure(sheet: Sheet) -> Figure:
         x=PH,
         y=Axis(label="share of the family", unit="", low=0.0, high=1.0),
         series=styled(series),
-        marks=(Mark(axis="x", value=pH, label=f"pH {pH:.2f}"),),
+        marks=(Mark(axis="x", value=pH, label=f"pH {fixed(pH, 2)}"),),
         cells=None,
         summary=_species_words(sheet),
     )
@@ -55,10 +56,10 @@ def _species_words(sheet: Sheet) -> str:
         if total > 0.0:
             top = int(np.argmax(shares))
             parts.append(
-                f"{shares[top] * 100:.0f} % of {family.label} as {family.species[top].label}"
+                f"{fixed(shares[top] * 100, 0)} % of {family.label} as {family.species[top].label}"
             )
     named = "; ".join(parts) if parts else "no family is present"
-    return f"At pH {sheet.reference.pH:.2f}: {named}."
+    return f"At pH {fixed(sheet.reference.pH, 2)}: {named}."
 
 
 def capacity_figure(sheet: Sheet) -> Figure:
@@ -81,21 +82,21 @@ def capacity_figure(sheet: Sheet) -> Figure:
             ]
         ),
         marks=(
-            Mark(axis="x", value=at.pH, label=f"pH {at.pH:.2f}"),
+            Mark(axis="x", value=at.pH, label=f"pH {fixed(at.pH, 2)}"),
             *_limit_marks(limits, "x"),
         ),
         cells=None,
         summary=(
-            f"At its own pH of {at.pH:.2f} the formulation takes up {at.capacity * MILLI:.3g} mmol "
-            "of strong base per kg of water and pH unit."
+            f"At its own pH of {fixed(at.pH, 2)} the formulation takes up "
+            f"{significant(at.capacity * MILLI)} mmol of strong base per kg of water and pH unit."
         ),
     )
 
 
 def _limit_marks(limits: Interval, axis: Literal["x", "y"]) -> tuple[Mark, ...]:
     return (
-        Mark(axis=axis, value=limits.low, label=f"limit {limits.low:g}"),
-        Mark(axis=axis, value=limits.high, label=f"limit {limits.high:g}"),
+        Mark(axis=axis, value=limits.low, label=f"limit {plain(limits.low)}"),
+        Mark(axis=axis, value=limits.high, label=f"limit {plain(limits.high)}"),
     )
 
 
@@ -108,7 +109,7 @@ def titration_figure(sheet: Sheet) -> Figure | None:
         Mark(
             axis="x",
             value=_signed(side, point.amount) * MILLI,
-            label=f"equivalence, pH {point.pH:.1f}",
+            label=f"equivalence, pH {fixed(point.pH, 1)}",
         )
         for side in sheet.sides
         for point in side.equivalences
@@ -174,8 +175,8 @@ def _titration_words(sides: Sequence[Side]) -> str:
         name = side.titrant.reagent.label
         if side.reserve > 0.0:
             parts.append(
-                f"{side.reserve * MILLI:.3g} mmol of {name} per kg of water lead to the limit "
-                "of use"
+                f"{significant(side.reserve * MILLI)} mmol of {name} per kg of water lead to the "
+                "limit of use"
             )
         else:
             parts.append(f"{name} does not lead to the limit of use")
@@ -197,11 +198,11 @@ def drift_figure(sheet: Sheet) -> Figure:
         Mark(
             axis="x",
             value=sheet.reference.temperature - ZERO_CELSIUS,
-            label=f"{sheet.reference.temperature - ZERO_CELSIUS:g} °C",
+            label=f"{plain(sheet.reference.temperature - ZERO_CELSIUS)} °C",
         )
     ]
     if expected is not None:
-        marks.append(Mark(axis="y", value=expected.pH, label=f"expected {expected.pH:g}"))
+        marks.append(Mark(axis="y", value=expected.pH, label=f"expected {plain(expected.pH)}"))
         low, high = min(low, expected.pH), max(high, expected.pH)
     return Figure(
         key="drift",
@@ -213,8 +214,8 @@ def drift_figure(sheet: Sheet) -> Figure:
         marks=tuple(marks),
         cells=None,
         summary=(
-            f"From {celsius[0]:g} to {celsius[-1]:g} °C the pH goes from {pH[0]:.2f} to "
-            f"{pH[-1]:.2f}, {slope:+.4f} per °C on average."
+            f"From {plain(celsius[0])} to {plain(celsius[-1])} °C the pH goes from "
+            f"{fixed(pH[0], 2)} to {fixed(pH[-1], 2)}, {signed(slope, 4)} per °C on average."
         ),
     )
 
@@ -240,13 +241,13 @@ def surface_figure(sheet: Sheet) -> Figure | None:
         y=Axis(label="temperature", unit="°C", low=float(celsius[0]), high=float(celsius[-1])),
         series=(),
         marks=(
-            Mark(axis="value", value=limits.low, label=f"limit {limits.low:g}"),
-            Mark(axis="value", value=limits.high, label=f"limit {limits.high:g}"),
+            Mark(axis="value", value=limits.low, label=f"limit {plain(limits.low)}"),
+            Mark(axis="value", value=limits.high, label=f"limit {plain(limits.high)}"),
         ),
         cells=Cells(x=edges(amount), y=edges(celsius), values=surface.pH, label="pH", unit=""),
         summary=(
             f"Over the temperatures of use and these additions the pH runs from "
-            f"{np.nanmin(surface.pH):.2f} to {np.nanmax(surface.pH):.2f}."
+            f"{fixed(np.nanmin(surface.pH), 2)} to {fixed(np.nanmax(surface.pH), 2)}."
         ),
     )
 

@@ -74,10 +74,7 @@ def constants_at(families: Sequence[Family], temperature: FloatArray) -> Constan
             low, high = step.valid_temperature.low, step.valid_temperature.high
             # A thousandth of a kelvin: 0 °C typed in other units must not fall outside.
             in_range &= (kelvin > low - 1e-3) & (kelvin < high + 1e-3)
-    pK = tuple(
-        np.array([pK_at(step, kelvin) for step in family.steps]).reshape(len(family.steps), *kelvin.shape)
-        for family in families
-    )
+    pK = tuple(np.stack([pK_at(step, kelvin) for step in family.steps]) for family in families)
     return Constants(
         pK=pK, pKw=pKw_at(kelvin), debye_huckel=debye_huckel(kelvin), in_range=in_range
     )

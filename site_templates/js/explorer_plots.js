@@ -6,8 +6,9 @@
 (function (bf) {
   "use strict";
 
+  const { fixed, plain, significant } = bf.formatting;
   const { ZERO_CELSIUS } = bf.water;
-  const { PH, MILLI, axis, general, line, lines } = bf.plots;
+  const { PH, MILLI, axis, line, lines } = bf.plots;
 
   const TINY = 1e-300;
 
@@ -34,7 +35,7 @@
       const share = difference[before] / (difference[before] - difference[after]);
       const crossing = sweep.pH[before] + share * (sweep.pH[after] - sweep.pH[before]);
       const [acid, base] = [family.species[step].label, family.species[step + 1].label];
-      parts.push(acid + " and " + base + " are equal at pH " + crossing.toFixed(2));
+      parts.push(acid + " and " + base + " are equal at pH " + fixed(crossing, 2));
     }
     return (parts.length > 0 ? parts.join("; ") : "One form prevails from pH 0 to 14") + ".";
   }
@@ -53,7 +54,7 @@
     return lines(
       "logs", "Log molality against pH", PH, axis("log₁₀ of molality", "mol/kg", -10, 0), series,
       [],
-      "Forms of " + family.label + " at " + general(exploration.total) +
+      "Forms of " + family.label + " at " + plain(exploration.total) +
         " mol/kg in all, with H⁺ and OH⁻.",
     );
   }
@@ -69,8 +70,8 @@
       "capacity", "Buffer capacity against pH", PH,
       axis("buffer capacity", "mmol/kg per pH", 0, high),
       [line("capacity", "capacity", sweep.pH, capacity)], [],
-      "Between pH 2 and 12 it buffers best at pH " + sweep.pH[best].toFixed(1) + ": " +
-        general(sweep.capacity[best] * MILLI, 3) + " mmol/kg per pH unit.",
+      "Between pH 2 and 12 it buffers best at pH " + fixed(sweep.pH[best], 1) + ": " +
+        significant(sweep.capacity[best] * MILLI) + " mmol/kg per pH unit.",
     );
   }
 

@@ -8,6 +8,8 @@
 (function (bf) {
   "use strict";
 
+  const { formatting } = bf;
+  const { fixed, plain } = formatting;
   const { ZERO_CELSIUS } = bf.water;
 
   const PH = { label: "pH", unit: "", low: 0, high: 14, scale: "linear" };
@@ -15,18 +17,6 @@
   const MOST_LINES = 10;
   const MILLI = 1e3;
   const SIGNIFICANT_DIGITS = 6; // as in figures.py
-
-  /** A number as Python's format "g" writes it. @param {number} value @param {number} [digits]
-   * @returns {string} */
-  function general(value, digits = 6) {
-    if (!Number.isFinite(value)) return Number.isNaN(value) ? "nan" : String(value);
-    const [mantissa, exponent] = value.toExponential(digits - 1).split("e");
-    const power = Number(exponent);
-    const bare = (text) => (text.includes(".") ? text.replace(/\.?0+$/, "") : text);
-    if (power >= -4 && power < digits) return bare(value.toFixed(digits - 1 - power));
-    const sign = power < 0 ? "-" : "+";
-    return bare(mantissa) + "e" + sign + String(Math.abs(power)).padStart(2, "0");
-  }
 
   function axis(label, unit, low, high) {
     return { label, unit, low, high, scale: "linear" };
@@ -93,7 +83,7 @@
     const { pH } = sheet.reference;
     return lines(
       "fractions", "Forms of each family", PH, axis("share of the family", "", 0, 1), series,
-      [mark("x", pH, "pH " + pH.toFixed(2))], speciesWords(sheet),
+      [mark("x", pH, "pH " + fixed(pH, 2))], speciesWords(sheet),
     );
   }
 
@@ -104,11 +94,11 @@
       if (!(totals[at] > 0)) return;
       const shares = Array.from(sheet.reference.forms.fractions[at]);
       const top = shares.indexOf(Math.max(...shares));
-      const share = (shares[top] * 100).toFixed(0);
+      const share = fixed(shares[top] * 100, 0);
       parts.push(share + " % of " + family.label + " as " + family.species[top].label);
     });
     const named = parts.length > 0 ? parts.join("; ") : "no family is present";
-    return "At pH " + sheet.reference.pH.toFixed(2) + ": " + named + ".";
+    return "At pH " + fixed(sheet.reference.pH, 2) + ": " + named + ".";
   }
 
   /** Buffer capacity against pH, within and around the limits of use.
@@ -122,14 +112,14 @@
     return lines(
       "capacity", "Buffer capacity", PH, axis("buffer capacity", "mmol/kg per pH", 0, 1.1 * top),
       [line("capacity", "capacity", sweep.pH, capacity)],
-      [mark("x", at.pH, "pH " + at.pH.toFixed(2)), ...limitMarks(limits, "x")],
-      "At its own pH of " + at.pH.toFixed(2) + " the formulation takes up " +
-        general(at.capacity * MILLI, 3) + " mmol of strong base per kg of water and pH unit.",
+      [mark("x", at.pH, "pH " + fixed(at.pH, 2)), ...limitMarks(limits, "x")],
+      "At its own pH of " + fixed(at.pH, 2) + " the formulation takes up " +
+        formatting.significant(at.capacity * MILLI) + " mmol of strong base per kg of water and pH unit.",
     );
   }
 
   function limitMarks(limits, along) {
-    return [limits.low, limits.high].map((limit) => mark(along, limit, "limit " + general(limit)));
+    return [limits.low, limits.high].map((limit) => mark(along, limit, "limit " + plain(limit)));
   }
 
   /** PH after each amount of acid (left) and base (right), plain water for contrast.
@@ -141,7 +131,7 @@
     const marks = [];
     for (const side of sides) {
       for (const point of side.equivalences.filter((each) => each.visible)) {
-        const label = "equivalence, pH " + point.pH.toFixed(1);
+        const label = "equivalence, pH " + fixed(point.pH, 1);
         marks.push(mark("x", signed(side, point.amount) * MILLI, label));
       }
     }
@@ -189,7 +179,7 @@
     for (const side of sides) {
       const name = side.titrant.reagent;
       parts.push(side.reserve > 0
-        ? general(side.reserve * MILLI, 3) + " mmol of " + name +
+        ? formatting.significant(side.reserve * MILLI) + " mmol of " + name +
           " per kg of water lead to the limit of use"
         : name + " does not lead to the limit of use");
       const hidden = side.equivalences.filter((each) => !each.visible).length;
@@ -211,9 +201,9 @@
     const margin = Math.max(0.1, 0.15 * (high - low));
     const slope = (pH[last] - pH[0]) / (celsius[last] - celsius[0]);
     const here = sheet.reference.temperature - ZERO_CELSIUS;
-    const marks = [mark("x", here, general(here) + " °C")];
+    const marks = [mark("x", here, plain(here) + " °C")];
     if (expected !== null) {
-      marks.push(mark("y", expected.pH, "expected " + general(expected.pH)));
+      marks.push(mark("y", expected.pH, "expected " + plain(expected.pH)));
       low = Math.min(low, expected.pH);
       high = Math.max(high, expected.pH);
     }
@@ -221,9 +211,9 @@
     return lines(
       "drift", "pH and temperature", axis("temperature", "°C", ...ends),
       axis("pH", "", low - margin, high + margin), [line("pH", "pH", celsius, pH)], marks,
-      "From " + general(ends[0]) + " to " + general(ends[1]) + " °C the pH goes from " +
-        pH[0].toFixed(2) + " to " + pH[last].toFixed(2) + ", " +
-        (slope < 0 ? "" : "+") + slope.toFixed(4) + " per °C on average.",
+      "From " + plain(ends[0]) + " to " + plain(ends[1]) + " °C the pH goes from " +
+        fixed(pH[0], 2) + " to " + fixed(pH[last], 2) + ", " +
+        formatting.signed(slope, 4) + " per °C on average.",
     );
   }
 
@@ -248,7 +238,7 @@
       },
       summary:
         "Over the temperatures of use and these additions the pH runs from " +
-        Math.min(...values).toFixed(2) + " to " + Math.max(...values).toFixed(2) + ".",
+        fixed(Math.min(...values), 2) + " to " + fixed(Math.max(...values), 2) + ".",
     });
   }
 
@@ -267,5 +257,5 @@
     surface: surfaceFigure,
   };
 
-  bf.plots = { PH, MILLI, SHEET_FIGURES, axis, general, line, lines };
+  bf.plots = { PH, MILLI, SHEET_FIGURES, axis, line, lines };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -1,7 +1,8 @@
 """The page's engine against Python: random systems, every shipped formulation, every figure.
 
 Both solve the same equations to the last few bits, so that the limits here (1e-9) are those of the
-design and not of what agrees today: the largest differences are about a thousand times smaller.
+design and not of what agrees today: over the random systems pH differs by 3e-14 at most, capacity
+by 2e-14 and a fraction by 3e-13 of itself.
 """
 
 from collections.abc import Iterator
@@ -82,7 +83,8 @@ DRAW: Final = """
     const drawn = {};
     for (const [key, make] of Object.entries(makers)) {
       const figure = make(results);
-      if (figure !== null) drawn[key] = [JSON.parse(JSON.stringify(figure)), bf.svg_figures.svg(figure)];
+      if (figure === null) continue;
+      drawn[key] = [JSON.parse(JSON.stringify(figure)), bf.svg_figures.svg(figure)];
     }
     return drawn;
   }
@@ -205,9 +207,7 @@ def test_every_figure_of_a_sheet_is_the_same_picture(engine: Visitor, library: L
         assert_same_pictures(engine, key, sheet_data(sheet), made)
 
 
-def test_every_figure_of_an_explorer_is_the_same_picture(
-    engine: Visitor, library: Library
-) -> None:
+def test_every_figure_of_an_explorer_is_the_same_picture(engine: Visitor, library: Library) -> None:
     for key, family in library.families.items():
         exploration = exploration_of(family)
         made = {name: make(exploration) for name, make in EXPLORER_FIGURES.items()}
