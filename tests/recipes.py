@@ -3,12 +3,11 @@
 from collections.abc import Mapping
 from functools import lru_cache
 
-from solutions import CALCIUM, CHLORIDE, POTASSIUM, SODIUM, mixture_of
-
 from bufferfolio import resources
-from bufferfolio.definitions import Family, Ion, Library
+from bufferfolio.definitions import Ion, Library
 from bufferfolio.reading import read_library
 from bufferfolio.speciation import Mixture
+from solutions import CALCIUM, CHLORIDE, POTASSIUM, SODIUM, mixture_of
 
 # Families and strong ions of one mole; the balance of charge finds the protons.
 BRINGS: Mapping[str, tuple[Mapping[str, int], Mapping[Ion, int]]] = {

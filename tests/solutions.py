@@ -1,4 +1,4 @@
-"""Families, mixtures and constants that tests make up for themselves, with every number in sight."""
+"""Families, mixtures and constants that tests make up for themselves, each number in sight."""
 
 from collections.abc import Iterable, Sequence
 from dataclasses import replace
@@ -51,7 +51,9 @@ def made_up_step(
     )
 
 
-def made_up_family(key: str, charge: int, pK: Sequence[float], valid: Interval | None = None) -> Family:
+def made_up_family(
+    key: str, charge: int, pK: Sequence[float], valid: Interval | None = None
+) -> Family:
     """Return a family whose first form has this charge, the same at every temperature."""
     return Family(
         key=key,
@@ -70,7 +72,7 @@ def made_up_family(key: str, charge: int, pK: Sequence[float], valid: Interval |
 def mixture_of(
     families: Iterable[tuple[Family, object]] = (), ions: Iterable[tuple[Ion, object]] = ()
 ) -> Mixture:
-    """Return a mixture from pairs of what is in it and how much: numbers, or arrays of a shape S."""
+    """Return a mixture from pairs of what is in it and how much: numbers, or arrays S."""
     families, ions = list(families), list(ions)
     shape = np.broadcast_shapes(*(np.shape(amount) for _, amount in [*families, *ions]))
 
@@ -86,7 +88,9 @@ def mixture_of(
     )
 
 
-def constants_of(mixture: Mixture, temperature: object = STANDARD, pKw: float | None = None) -> Constants:
+def constants_of(
+    mixture: Mixture, temperature: object = STANDARD, pKw: float | None = None
+) -> Constants:
     """Return a mixture's constants at one temperature or at one a point, with a pKw of choice."""
     shape = mixture.totals.shape[1:] if mixture.families else mixture.molalities.shape[1:]
     kelvin = np.broadcast_to(np.asarray(temperature, dtype=float), shape)

@@ -4,6 +4,12 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
+from bufferfolio.activity import MODELS
+from bufferfolio.buffering import buffer_capacity, henderson_hasselbalch, sweep
+from bufferfolio.composition import scaled
+from bufferfolio.equilibrium import solve
+from bufferfolio.speciation import Mixture
 from recipes import shipped
 from solutions import (
     CHLORIDE,
@@ -14,12 +20,6 @@ from solutions import (
     made_up_family,
     mixture_of,
 )
-
-from bufferfolio.activity import MODELS
-from bufferfolio.buffering import buffer_capacity, henderson_hasselbalch, sweep
-from bufferfolio.composition import scaled
-from bufferfolio.equilibrium import solve
-from bufferfolio.speciation import Mixture
 
 ACETIC = made_up_family("acetic", 0, [4.756])
 PHOSPHORIC = made_up_family("phosphoric", 0, [2.148, 7.198, 12.35])
@@ -61,7 +61,9 @@ def with_base(mixture: Mixture, base: np.ndarray) -> Mixture:
 
 def capacity_of(mixture: Mixture, model: str) -> np.ndarray:
     constants = constants_of(mixture)
-    return buffer_capacity(mixture, constants, MODELS[model], solve(mixture, constants, MODELS[model]))
+    return buffer_capacity(
+        mixture, constants, MODELS[model], solve(mixture, constants, MODELS[model])
+    )
 
 
 @pytest.mark.parametrize("model", MODELS)
@@ -150,7 +152,7 @@ def test_capacity_has_its_highest_point_at_the_pK() -> None:
 
 
 def test_pair_terms_held_change_a_capacity_by_little() -> None:
-    """The capacity holds Σ ε m; the curve moves it. In 0.1 mol/kg of phosphate that is under 2 %."""
+    """The capacity holds Σ ε m; the curve moves it. In 0.1 mol/kg of phosphate: under 2 %."""
     family = shipped().families["phosphate"]
     pairs, model = shipped().interactions, MODELS["specific-ion"]
     sodium = 0.15 + 1e-4 * np.array([-1.0, 0.0, 1.0])

@@ -2,8 +2,6 @@
 
 import numpy as np
 import pytest
-from recipes import shipped
-from solutions import CHLORIDE, NOWHERE, SODIUM, mixture_of, strong_titrant
 
 from bufferfolio.composition import (
     addition,
@@ -16,6 +14,8 @@ from bufferfolio.composition import (
     water_mass,
 )
 from bufferfolio.definitions import Formulation, Interval, MakeUp, Portion, Titrant
+from recipes import shipped
+from solutions import CHLORIDE, NOWHERE, SODIUM, mixture_of, strong_titrant
 
 WATER = 0.018015268  # kg/mol
 
@@ -159,9 +159,7 @@ def test_a_solid_has_no_volume() -> None:
     }
 
 
-MIXTURE = mixture_of(
-    [(shipped().families["phosphate"], 0.05)], [(SODIUM, 0.08), (CHLORIDE, 0.0)]
-)
+MIXTURE = mixture_of([(shipped().families["phosphate"], 0.05)], [(SODIUM, 0.08), (CHLORIDE, 0.0)])
 
 
 def test_mixing_keeps_every_mole() -> None:

@@ -4,6 +4,12 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
+from bufferfolio.activity import MODELS
+from bufferfolio.definitions import Family, Interval
+from bufferfolio.equilibrium import Equilibrium, Status, solve
+from bufferfolio.speciation import Mixture, forms_at, stacked
+from bufferfolio.temperature import Constants
 from solutions import (
     CHLORIDE,
     MAGNESIUM,
@@ -15,12 +21,6 @@ from solutions import (
     pH_of,
     state_of,
 )
-
-from bufferfolio.activity import MODELS
-from bufferfolio.definitions import Family, Interval
-from bufferfolio.equilibrium import Equilibrium, Status, solve
-from bufferfolio.speciation import Mixture, forms_at, stacked
-from bufferfolio.temperature import Constants
 
 CLOSED = 1e-12  # relative; charge, mass and ionic strength
 SAME = 1e-12  # in pH; the same equations, added up in another order
@@ -127,8 +127,20 @@ def test_a_last_step_that_turns_back_is_taken_whole() -> None:
         (1, [1.2154174709314338, 3.8800141133045543], 0.25119978584338615),
     ]
     mixture = mixture_of(
-        [(made_up_family(f"family {i}", z, pK), total) for i, (z, pK, total) in enumerate(families)],
-        zip(IONS, [3.3240394877714945e-05, 5.8758056947969215e-09, 4.8093770165180484e-08, 0.8845819208766611], strict=True),
+        [
+            (made_up_family(f"family {i}", z, pK), total)
+            for i, (z, pK, total) in enumerate(families)
+        ],
+        zip(
+            IONS,
+            [
+                3.3240394877714945e-05,
+                5.8758056947969215e-09,
+                4.8093770165180484e-08,
+                0.8845819208766611,
+            ],
+            strict=True,
+        ),
     )
     constants = constants_of(mixture, 338.738168950111)
     assert_closed(mixture, constants, "davies", solve(mixture, constants, MODELS["davies"]))
@@ -199,15 +211,15 @@ def test_base_raises_pH(mixture: Mixture, temperature: float) -> None:
     for model in MODELS:
         state = state_of(many, MODELS[model], temperature)
         trusted = state.status != Status.BEYOND_MODEL
-        rise = np.diff(state.pH)[trusted[1:] & trusted[:-1]] if model != "ideal" else np.diff(state.pH)
+        rise = (
+            np.diff(state.pH)[trusted[1:] & trusted[:-1]] if model != "ideal" else np.diff(state.pH)
+        )
         assert (rise > -1e-12).all()
 
 
 @QUICK
 @given(mixtures(), temperatures, models)
-def test_a_family_listed_twice_is_its_sum(
-    mixture: Mixture, temperature: float, model: str
-) -> None:
+def test_a_family_listed_twice_is_its_sum(mixture: Mixture, temperature: float, model: str) -> None:
     inside = list(zip(mixture.families, mixture.totals, strict=True))
     ions = list(zip(mixture.ions, mixture.molalities, strict=True))
     halves = mixture_of([(f, 0.5 * t) for f, t in inside * 2], ions)
@@ -274,7 +286,7 @@ def test_status_out_of_range() -> None:
 
 
 def test_status_beyond_model() -> None:
-    """Solved above the ionic strength that the model is trusted to, and marked, also out of range."""
+    """Solved above the ionic strength that the model is trusted to; marked, out of range too."""
     assert status_of(SALTY, 298.15) is Status.BEYOND_MODEL
     assert status_of(SALTY, 350.0) is Status.BEYOND_MODEL
     assert status_of(SALTY, 298.15, "specific-ion") is Status.SOLVED

@@ -4,13 +4,13 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from recipes import shipped
 
 from bufferfolio.definitions import Expectation
 from bufferfolio.equilibrium import Status
 from bufferfolio.explorations import exploration_of
 from bufferfolio.sheets import Sheet, sheet_of, sheets_of
 from bufferfolio.subjects import reference_temperature, state_at
+from recipes import shipped
 
 KEYS = sorted(shipped().formulations)
 FAMILIES = sorted(shipped().families)
@@ -111,9 +111,7 @@ def test_the_surface_meets_drift_and_titration(key: str, sheets: dict[str, Sheet
     assert (np.diff(surface.amount) > 0.0).all()
     assert np.isfinite(surface.pH).all()
     middle = surface.pH[:, int(np.argmin(np.abs(surface.amount)))]
-    np.testing.assert_allclose(
-        middle, sheet.drift.state.pH[::2], rtol=0.0, atol=1e-9
-    )
+    np.testing.assert_allclose(middle, sheet.drift.state.pH[::2], rtol=0.0, atol=1e-9)
     assert (np.diff(surface.pH, axis=1) > 0.0).all()
 
 

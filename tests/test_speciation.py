@@ -4,6 +4,10 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
+from bufferfolio.activity import MODELS
+from bufferfolio.definitions import Interaction
+from bufferfolio.speciation import forms_at, interaction_matrix, stacked
 from solutions import (
     CALCIUM,
     CHLORIDE,
@@ -14,10 +18,6 @@ from solutions import (
     made_up_family,
     mixture_of,
 )
-
-from bufferfolio.activity import MODELS
-from bufferfolio.definitions import Interaction
-from bufferfolio.speciation import forms_at, interaction_matrix, stacked
 
 QUICK = settings(derandomize=True, deadline=None, max_examples=100)
 PHOSPHORIC = made_up_family("phosphoric", 0, [2.148, 7.198, 12.35])

@@ -3,11 +3,11 @@
 import numpy as np
 import pytest
 from scipy.integrate import quad
-from solutions import MADE_UP, NOWHERE, made_up_family, made_up_step
 
 from bufferfolio.definitions import Interval, PublishedEquation, Step
 from bufferfolio.temperature import GAS_CONSTANT, LN10, constants_at, pK_at
 from bufferfolio.water import pKw_at
+from solutions import MADE_UP, NOWHERE, made_up_family, made_up_step
 
 CELSIUS = np.array([-5.0, 0.0, 10.0, 25.0, 37.0, 60.0, 100.0])
 

@@ -4,6 +4,12 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
+from bufferfolio.activity import MODELS
+from bufferfolio.composition import Addition, pure_water
+from bufferfolio.equilibrium import Status
+from bufferfolio.speciation import Mixture
+from bufferfolio.titration import amount_to_reach, equivalences, titrate
 from recipes import shipped
 from solutions import (
     CHLORIDE,
@@ -13,12 +19,6 @@ from solutions import (
     pH_of,
     strong_titrant,
 )
-
-from bufferfolio.activity import MODELS
-from bufferfolio.composition import Addition, pure_water
-from bufferfolio.equilibrium import Status
-from bufferfolio.speciation import Mixture
-from bufferfolio.titration import amount_to_reach, equivalences, titrate
 
 KELVIN = 298.15
 PHOSPHORIC = made_up_family("phosphoric", 0, [2.148, 7.198, 12.35])
@@ -51,7 +51,7 @@ def test_the_amount_for_a_pH_brings_that_pH(
     assert np.isnan(other)
 
 
-@settings(derandomize=True, deadline=None, max_examples=80)
+@settings(derandomize=True, deadline=None, max_examples=40)
 @given(
     st.floats(1e-4, 0.3),
     st.floats(0.1, 2.9),
@@ -80,9 +80,7 @@ def test_no_amount_reaches_a_pH_beyond_the_titrant() -> None:
 
 def test_pair_terms_take_part_in_an_amount() -> None:
     library = shipped()
-    mixture = mixture_of(
-        [(library.families["phosphate"], 0.2)], [(SODIUM, 0.3), (CHLORIDE, 0.0)]
-    )
+    mixture = mixture_of([(library.families["phosphate"], 0.2)], [(SODIUM, 0.3), (CHLORIDE, 0.0)])
     rest = (MODELS["specific-ion"], library.interactions)
     amount = amount_to_reach(mixture, ACID, 6.0, KELVIN, *rest)
     curve = titrate(mixture, ACID, np.array(amount), np.array(KELVIN), *rest)

@@ -18,7 +18,7 @@ def reference_density() -> np.ndarray:
 
 
 def test_density_follows_iapws_95(reference_density: np.ndarray) -> None:
-    """Kell's equation is older: 0.0036 kg/m3 off to 30 °C and 0.015 at 100 °C, as he and others say."""
+    """Kell's equation is older: 0.0036 kg/m3 off to 30 °C and 0.015 at 100 °C."""
     miss = np.abs(density(273.15 + CELSIUS) - reference_density)
     assert (miss[CELSIUS <= 40.0] < 0.004).all()
     assert (miss < 0.016).all()
@@ -38,8 +38,7 @@ def test_permittivity_is_that_of_the_release(reference_density: np.ndarray) -> N
 
 
 def test_pKw_follows_the_later_parameters_within_their_difference() -> None:
-    """The library carries a revision of 2020: up to 0.009 at 0 °C, 0.015 at 75 °C, 0.000 at 25 °C."""
-
+    """The library carries a revision of 2020: 0.009 off at 0 °C, 0.015 at 75 °C, 0.000 at 25."""
 
     expected = [_Kw(float(density(np.array(273.15 + t))), 273.15 + t) for t in CELSIUS]
     np.testing.assert_allclose(pKw_at(273.15 + CELSIUS), expected, rtol=0.0, atol=0.016)
@@ -51,13 +50,10 @@ def test_pKw_is_that_of_its_own_density() -> None:
 
 
 def test_debye_huckel_from_its_definition() -> None:
-    """A = (2 π N ρ)^½ (e² / 4 π ε₀ ε k T)^1.5 / ln 10, here with IAPWS-95 and by hand: 0.5098 at 25 °C."""
+    """A = (2 π N ρ)^½ (e² / 4 π ε₀ ε k T)^1.5 / ln 10; by hand with IAPWS-95: 0.5098 at 25 °C."""
     a = (
         (2 * np.pi * 6.02214076e23 * 997.0476) ** 0.5
-        * (
-            1.602176634e-19**2
-            / (4 * np.pi * 8.8541878128e-12 * 78.408 * 1.380649e-23 * 298.15)
-        )
+        * (1.602176634e-19**2 / (4 * np.pi * 8.8541878128e-12 * 78.408 * 1.380649e-23 * 298.15))
         ** 1.5
         / np.log(10)
     )

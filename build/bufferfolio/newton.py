@@ -5,11 +5,12 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from bufferfolio.balance import Problem, part, residuals, two_sum, weights
+from bufferfolio.balance import Problem, added, part, residuals, two_sum, weighted, weights
 from bufferfolio.temperature import LN10
 from bufferfolio.water import FloatArray
 
 ROUNDS: Final = 40
+HALVINGS: Final = 2  # of the pH scale before the first step; each is a quarter of a step's work
 LONGEST_STEP: Final = 6.0  # in ln a(H+); farther than that a tangent says little
 # Convergence is quadratic: a step this small leaves an error of its square.
 SETTLED: Final = 1e-8
@@ -18,15 +19,31 @@ LOOSE: Final = 1e-3
 
 
 def first_guess(problem: Problem) -> tuple[FloatArray, FloatArray]:
-    """Return where to begin: neutral pH and the ionic strength of the strong ions.
+    """Return where to begin: the right quarter of the pH scale, the strong ions' strength.
 
     Shapes: results n.
     Units: ln a(H+); ln (I kg/mol).
     Raises: nothing.
-    Source: own choice.
+    Source: bisection of the charge balance at that ionic strength.
     """
     strength = 0.5 * (problem.strength + np.abs(problem.net)) + 0.01 * problem.totals.sum(0) + 1e-7
-    return np.full(problem.size, -7.0 * LN10), np.log(strength)
+    term, _ = problem.long_range(problem.coefficient, np.minimum(strength, 0.5))
+    g = np.exp(LN10 * term)
+    x, reach = np.full(problem.size, -7.0 * LN10), 3.5 * LN10
+    for _ in range(HALVINGS):
+        x = x - np.copysign(reach, _net_charge(problem, np.exp(x), g))
+        reach = 0.5 * reach
+    return x, np.log(strength)
+
+
+def _net_charge(problem: Problem, h: FloatArray, g: FloatArray) -> FloatArray:
+    """Return the charge of everything in the water, without derivatives."""
+    charge = problem.net + problem.hydrogen * h * g - problem.hydroxide / h * g
+    for first, K, total in zip(problem.charges, problem.K, problem.totals, strict=True):
+        forms = weights(first, K, h, g)
+        lost = weighted(range(len(forms)), forms) / added(forms)
+        charge = charge + total * (first - lost)
+    return charge
 
 
 def newton(

@@ -38,16 +38,18 @@
     maker.busy = false;
   }
 
+  /** Wait until what is due has been painted and nobody is moving anything. */
   async function quietMoment(maker) {
     do {
-      await idle();
+      await painted();
+      const wait = maker.quietFrom - performance.now();
+      if (wait > 0) await new Promise((resolve) => setTimeout(resolve, wait));
     } while (performance.now() < maker.quietFrom);
   }
 
-  function idle() {
+  function painted() {
     return new Promise((resolve) => {
-      if ("requestIdleCallback" in globalThis) requestIdleCallback(resolve, { timeout: 300 });
-      else setTimeout(resolve, 50);
+      requestAnimationFrame(() => setTimeout(resolve));
     });
   }
 

@@ -114,7 +114,8 @@
       [line("capacity", "capacity", sweep.pH, capacity)],
       [mark("x", at.pH, "pH " + fixed(at.pH, 2)), ...limitMarks(limits, "x")],
       "At its own pH of " + fixed(at.pH, 2) + " the formulation takes up " +
-        formatting.significant(at.capacity * MILLI) + " mmol of strong base per kg of water and pH unit.",
+        formatting.significant(at.capacity * MILLI) +
+        " mmol of strong base per kg of water and pH unit.",
     );
   }
 

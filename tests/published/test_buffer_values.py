@@ -2,13 +2,13 @@
 
 import numpy as np
 import pytest
-from published_tables import Difference, Row, assert_within, differences
-from recipes import recipe
-from solutions import constants_of, made_up_family, mixture_of
 
 from bufferfolio.activity import MODELS
 from bufferfolio.buffering import buffer_capacity, sweep
 from bufferfolio.equilibrium import solve
+from published_tables import Difference, Row, assert_within, differences
+from recipes import recipe
+from solutions import constants_of, made_up_family, mixture_of
 
 MODEL = MODELS["davies"]
 
@@ -41,9 +41,9 @@ PREDICT = {
 }
 
 
-# Printed values that simple theory contradicts: borax 0.020 (2.303 · 0.04 / 4 is 0.023), KCl–HCl at
-# pH 2.2 0.022 (2.303 · 0.0078 is 0.018), and dihydrogen citrate's dilution +0.024 (a Davies estimate
-# gives +0.046). They are compared all the same, and must not be farther off than that.
+# Printed values that simple theory contradicts: borax 0.020 (2.303 · 0.04 / 4 is 0.023), KCl–HCl
+# at pH 2.2 0.022 (2.303 · 0.0078 is 0.018), and dihydrogen citrate's dilution +0.024 (a Davies
+# estimate gives +0.046). They are compared all the same, and must not be farther off than that.
 DOUBTFUL = {"buffer value": 0.0045, "dilution value": 0.025}
 
 

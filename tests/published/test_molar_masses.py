@@ -4,6 +4,7 @@ import re
 from collections import Counter
 
 import numpy as np
+
 from published_tables import Row, assert_within, differences, rows_of
 from recipes import shipped
 

@@ -11,6 +11,9 @@ and Bates–Guggenheim terms differ by 0.007 in pH, a published pair coefficient
 from collections.abc import Sequence
 
 import pytest
+
+from bufferfolio.activity import MODELS
+from bufferfolio.equilibrium import solve
 from published_tables import (
     Difference,
     Row,
@@ -21,9 +24,6 @@ from published_tables import (
 )
 from recipes import recipe, shipped
 from solutions import constants_of
-
-from bufferfolio.activity import MODELS
-from bufferfolio.equilibrium import solve
 
 UNCERTAINTY = 0.0125
 BAND = 0.025  # k = 2
@@ -65,7 +65,7 @@ def test_standards_of_the_modern_scales_lie_in_their_band(model: str, pairs: boo
 
 @pytest.mark.parametrize(("model", "pairs"), CASES)
 def test_standards_of_pharmacopoeia_and_industry_lie_in_their_band(model: str, pairs: bool) -> None:
-    """Printed to two decimals: half of the last one on top. Largest today -0.029 (carbonate, pairs)."""
+    """Two decimals: half of the last one on top. Largest today -0.029 (carbonate, pairs)."""
     rounded = of_scale(standards(model, pairs=pairs), "two decimals")
     assert len(rounded) == 70
     assert_within(rounded, lambda item: BAND + 0.005)
@@ -80,6 +80,6 @@ def test_the_older_phthalate_scale_lies_in_a_wider_band(model: str, pairs: bool)
 
 
 def test_ideal_solutions_would_not_do() -> None:
-    """The comparison can tell a model without activity coefficients: 0.3 off for phosphate."""
+    """The comparison can tell a model without activity coefficients: 0.36 off at most."""
     found = of_scale(standards("ideal"), "modern")
     assert largest(found) > 0.25

@@ -3,10 +3,10 @@
 from collections.abc import Iterator
 
 import numpy as np
-from published_tables import Difference, Row, assert_within, differences, rows_of
-from recipes import shipped
 
 from bufferfolio.temperature import pK_at
+from published_tables import Difference, Row, assert_within, differences, rows_of
+from recipes import shipped
 
 
 def shipped_pK(row: Row, celsius: float) -> float:
@@ -17,8 +17,8 @@ def shipped_pK(row: Row, celsius: float) -> float:
 def test_pK_agrees_with_published_tables_over_temperature() -> None:
     """Cell measurements, none of them shipped as such.
 
-    Two laboratories differ by 0.006 for Tris at 25 °C and one of them reaches 60 °C, beyond what the
-    heat capacity was fitted to. The largest misses today: 0.0053 to 55 °C, 0.0072 at 60 °C (Tris).
+    Two laboratories differ by 0.006 for Tris at 25 °C and one of them reaches 60 °C, beyond what
+    the heat capacity was fitted to. Largest misses today: 0.0053 to 55 °C, 0.0072 at 60 °C (Tris).
     """
 
     def tolerance(item: Difference) -> float:
@@ -45,11 +45,11 @@ OWN = {
 }
 # Where sources disagree by more than the 0.01 that equations for one acid usually leave.
 DISAGREEMENT = {
-    # The fresh-water limit of a sea-water equation, with one constant enthalpy, 25 against 16 kJ/mol.
-    # [0.130, at 45 °C]
+    # The fresh-water limit of a sea-water equation, with one constant enthalpy, 25 against
+    # 16 kJ/mol. [0.130, at 45 °C]
     "Phosphoric acid, K3 (fresh-water limit)": 0.14,
     # The ion is strong, and its association with the salt blurs it: the enthalpies of the three
-    # equations run from -16 to -24 kJ/mol. [0.055, 0.120, 0.009]
+    # equations run from -16 to -24 kJ/mol. [0.055; 0.166, at 75 °C; 0.009]
     "Hydrogen sulfate ion, Pitzer et al.": 0.06,
     "Hydrogen sulfate ion, Marshall & Jones": 0.17,
     "Hydrogen sulfate ion, Dickson": 0.01,

@@ -1,10 +1,11 @@
-"""The tables themselves: each row has a source, each table a test, and no row can be passed over."""
+"""The tables themselves: a source for each row, a test for each table, and no row passed over."""
 
 import re
 from pathlib import Path
 
-import published_tables
 import pytest
+
+import published_tables
 from published_tables import FOLDER, differences, rows_of
 
 TABLES = sorted(path.name for path in FOLDER.glob("*.csv"))

@@ -1,18 +1,26 @@
 """Titrations worked out in textbooks.
 
-They are calculated with concentrations in place of activities, Kw = 1.0e-14 and the constants shown,
-volumes adding up. So are these: the `ideal` model, pKw = 14 put in place of water's own, and moles
-per litre read as moles per kilogram of water.
+They are calculated with concentrations in place of activities, Kw = 1.0e-14 and the constants
+shown, volumes adding up. So are these: the `ideal` model, pKw = 14 put in place of water's own, and
+moles per litre read as moles per kilogram of water.
 """
 
 import numpy as np
 import pytest
-from published_tables import Difference, Row, assert_within, differences
-from solutions import CHLORIDE, SODIUM, constants_of, made_up_family, mixture_of, pH_of, strong_titrant
 
 from bufferfolio.activity import MODELS
 from bufferfolio.composition import mixed
 from bufferfolio.equilibrium import solve
+from published_tables import Difference, Row, assert_within, differences
+from solutions import (
+    CHLORIDE,
+    SODIUM,
+    constants_of,
+    made_up_family,
+    mixture_of,
+    pH_of,
+    strong_titrant,
+)
 
 IDEAL = MODELS["ideal"]
 
@@ -20,7 +28,9 @@ IDEAL = MODELS["ideal"]
 def constants_shown(row: Row) -> list[float]:
     """Return the pK of a row, which prints Ka or pKa."""
     named = [part.split("=") for part in row["constants"].split()]
-    return [float(value) if name == "pKa" else -float(np.log10(float(value))) for name, value in named]
+    return [
+        float(value) if name == "pKa" else -float(np.log10(float(value))) for name, value in named
+    ]
 
 
 def titrated(row: Row) -> float:
@@ -40,7 +50,7 @@ def titrated(row: Row) -> float:
     titrant = strong_titrant(
         SODIUM if row["titrant"] == "NaOH" else CHLORIDE, float(row["titrant_molar"])
     )
-    # Per kilogram of the analyte's water, and for every mole its own litre of water over its strength.
+    # Per kilogram of the analyte's water; every mole brings a litre over its strength.
     amount = float(row["titrant_mL"]) * float(row["titrant_molar"]) / float(row["analyte_mL"])
     mixture = mixed(analyte, titrant, np.array(amount))
     return float(solve(mixture, constants_of(mixture, pKw=14.0), IDEAL).pH)
@@ -56,9 +66,7 @@ def test_every_point_of_the_textbooks() -> None:
     assert len(found) == 164
     approximate = [item for item in found if item.row["exact"]]
     assert len(approximate) == 3
-    exact = [
-        Difference(item.row, float(item.row["exact"]), item.computed) for item in approximate
-    ]
+    exact = [Difference(item.row, float(item.row["exact"]), item.computed) for item in approximate]
     rest = [item for item in found if not item.row["exact"]]
     assert_within([*rest, *exact], lambda item: 0.0101)
     assert_within(approximate, lambda item: 0.095)
@@ -88,7 +96,7 @@ def test_end_points_of_carbonate_and_phosphoric_acid() -> None:
 
 
 @pytest.mark.parametrize("volume", [0.1, 1.0, 10.0])
-def test_an_equimolar_buffer_reads_its_pKa_whatever_the_volume(volume: float) -> None:
+def test_an_equimolar_buffer_reads_its_constant_whatever_the_volume(volume: float) -> None:
     """Common practice, no source: acetic acid, Ka 1.8e-5, reads 4.74.
 
     At a hundredth molar its own hydrogen ions are 0.2 % of it, and move the reading by 0.0016.
