@@ -63,6 +63,7 @@
     const place = document.createElement("div");
     place.className = "plot-live";
     place.setAttribute("role", "img");
+    place.setAttribute("aria-label", current().title); // its whole words come with the first update
     try {
       maker.scripts = maker.scripts || fetchScripts(maker.assets);
       await maker.scripts;

@@ -14,10 +14,10 @@ answer, and plain numbers in place of numpy's.
 """
 
 import argparse
-import resource
 import subprocess
 import sys
 import time
+import tracemalloc
 from collections.abc import Callable
 from pathlib import Path
 from statistics import median
@@ -219,15 +219,13 @@ def compare(name: str, mixture: Mixture, turns: int, singles: int) -> tuple[floa
     tell(f"{name}: {count:,} mixtures, {singles} of them one by one")
     ratios = {}
     for way in ways:
-        both = [
-            median(theirs[k] / ours[k] for ours, theirs in zip(taken["this solver"], taken[way]))
-            for k in (0, 1)
-        ]
-        ratios[way] = both[0]
-        rate = 1.0 / median(clock for clock, _ in taken[way])
-        tell(
-            f"  {way:22}{rate:12,.0f} a second   ratio {both[0]:7,.1f}   processor {both[1]:7,.1f}"
+        turn_by_turn = list(zip(taken["this solver"], taken[way], strict=True))
+        clock, processor = (
+            median(theirs[k] / ours[k] for ours, theirs in turn_by_turn) for k in (0, 1)
         )
+        ratios[way] = clock
+        rate = 1.0 / median(seconds for seconds, _ in taken[way])
+        tell(f"  {way:22}{rate:12,.0f} a second   {clock:8,.1f} clock {processor:8,.1f} processor")
     return ratios["find_root"], ratios["brentq"]
 
 
@@ -253,11 +251,18 @@ def memory(points: int) -> float:
 
 
 def solve_and_tell(points: int) -> None:
-    """Solve, and print the largest resident size of this process."""
+    """Solve, and tell the largest resident size of this process; on Windows, of its arrays."""
+    if sys.platform == "win32":
+        tracemalloc.start()
     mixture = phosphate(points)
     solve(mixture, constants_of(mixture), DAVIES)
-    most = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss
-    tell(str(most * (1 if sys.platform == "darwin" else 1024)))
+    if sys.platform == "win32":
+        tell(str(tracemalloc.get_traced_memory()[1]))
+    else:
+        import resource  # not there on Windows
+
+        most = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss
+        tell(str(most * (1 if sys.platform == "darwin" else 1024)))
 
 
 def main() -> int:

@@ -65,8 +65,13 @@ def test_no_page_scrolls_sideways_with_plots_and_tables_open(visitor: Visitor, w
 
 
 def sideways(page: Page) -> int:
-    """Return by how many px a page is wider than its window."""
-    return int(page.evaluate("document.scrollingElement.scrollWidth - innerWidth"))
+    """Return by how many px a page is wider than its window, once plots have its new width."""
+    for _ in range(20):
+        excess = int(page.evaluate("document.scrollingElement.scrollWidth - innerWidth"))
+        if excess <= 0:
+            break
+        page.wait_for_timeout(100)
+    return excess
 
 
 @pytest.mark.parametrize("name", KINDS)
