@@ -49,9 +49,10 @@ def davies(coefficient: FloatArray, ionic_strength: FloatArray) -> tuple[FloatAr
     Source: Davies, Ion Association (1962) p. 41, with the later factor 0.3.
     """
     root = np.sqrt(ionic_strength)
-    share = root / (1.0 + root)
-    term = coefficient * (share - 0.3 * ionic_strength)
-    slope = coefficient * (0.5 * share / (1.0 + root) - 0.3 * ionic_strength)
+    whole, rise = 1.0 + root, 0.3 * ionic_strength
+    share = root / whole
+    term = coefficient * (share - rise)
+    slope = coefficient * (0.5 * share / whole - rise)
     return term, slope
 
 

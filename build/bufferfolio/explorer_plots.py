@@ -9,6 +9,7 @@ from bufferfolio.explorations import Exploration
 from bufferfolio.figures import Axis, Figure, Series
 from bufferfolio.formatting import fixed, plain, significant
 from bufferfolio.plots import MILLI, PH, styled
+from bufferfolio.temperature import LN10
 from bufferfolio.water import ZERO_CELSIUS
 
 
@@ -80,8 +81,8 @@ def explorer_logs(exploration: Exploration) -> Figure:
 def explorer_capacity(exploration: Exploration) -> Figure:
     """Buffer capacity against pH."""
     sweep = exploration.sweep
-    inside = (sweep.pH >= 2.0) & (sweep.pH <= 12.0)
-    best = int(np.argmax(np.where(inside, sweep.capacity, 0.0)))
+    water = LN10 * (sweep.forms.hydrogen + sweep.forms.hydroxide)
+    best = int(np.argmax(sweep.capacity - water))
     return Figure(
         key="capacity",
         kind="lines",
@@ -103,8 +104,8 @@ def explorer_capacity(exploration: Exploration) -> Figure:
         marks=(),
         cells=None,
         summary=(
-            f"Between pH 2 and 12 it buffers best at pH {fixed(sweep.pH[best], 1)}: "
-            f"{significant(sweep.capacity[best] * MILLI)} mmol/kg per pH unit."
+            f"Water's own ions apart, it buffers best at pH {fixed(sweep.pH[best], 1)}; with them "
+            f"it takes up {significant(sweep.capacity[best] * MILLI)} mmol/kg per pH unit there."
         ),
     )
 

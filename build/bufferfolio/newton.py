@@ -16,6 +16,7 @@ LONGEST_STEP: Final = 6.0  # in ln a(H+); farther than that a tangent says littl
 SETTLED: Final = 1e-8
 # Below this share of charge that answers to pH, rounding of the rest would show in a pH.
 LOOSE: Final = 1e-3
+PAYS: Final = 1.3  # how many times more mixtures than are left make it worth to part them
 
 
 def first_guess(problem: Problem) -> tuple[FloatArray, FloatArray]:
@@ -77,15 +78,17 @@ def newton(
         u = u + _clipped(step_u, 2.0)
         # A negative slope is a root that dilution does not lead to: left to the bracket.
         settled = (np.abs(step_x) < SETTLED) & (np.abs(step_u) < SETTLED) & (slope > 0.0)
-        if not settled.any():
+        still = np.flatnonzero(~settled)
+        # Taking arrays apart costs as much as half a round: wait until it pays.
+        if active.size < still.size * PAYS:
             continue
-        found_x[active[settled]], found_u[active[settled]] = x[settled], u[settled]
-        loose[active[settled]] = state.charge_x[settled] < LOOSE
-        keep = ~settled
-        active, x, u, last = active[keep], x[keep], u[keep], last[keep]
+        done = np.flatnonzero(settled)
+        found_x[active[done]], found_u[active[done]] = x[done], u[done]
+        loose[active[done]] = state.charge_x[done] < LOOSE
+        active, x, u, last = active[still], x[still], u[still], last[still]
         if not active.size:
             break
-        problem = part(problem, keep)
+        problem = part(problem, still)
     if loose.any():
         found_x[loose] = sharpened(part(whole, loose), found_x[loose], found_u[loose])
     return found_x, found_u, active

@@ -61,17 +61,18 @@
 
   /** Buffer capacity against pH. @param {Exploration} exploration @returns {Figure} */
   function explorerCapacity({ sweep }) {
-    const inside = sweep.capacity.map((each, at) =>
-      sweep.pH[at] >= 2 && sweep.pH[at] <= 12 ? each : 0);
-    const best = inside.indexOf(Math.max(...inside));
+    const { hydrogen, hydroxide } = sweep.forms;
+    const own = sweep.capacity.map((each, at) => each - Math.LN10 * (hydrogen[at] + hydroxide[at]));
+    const best = own.indexOf(Math.max(...own));
     const capacity = sweep.capacity.map((each) => each * MILLI);
     const high = 1.3 * sweep.capacity[best] * MILLI;
     return lines(
       "capacity", "Buffer capacity against pH", PH,
       axis("buffer capacity", "mmol/kg per pH", 0, high),
       [line("capacity", "capacity", sweep.pH, capacity)], [],
-      "Between pH 2 and 12 it buffers best at pH " + fixed(sweep.pH[best], 1) + ": " +
-        significant(sweep.capacity[best] * MILLI) + " mmol/kg per pH unit.",
+      "Water's own ions apart, it buffers best at pH " + fixed(sweep.pH[best], 1) +
+        "; with them it takes up " + significant(sweep.capacity[best] * MILLI) +
+        " mmol/kg per pH unit there.",
     );
   }
 
