@@ -68,5 +68,5 @@ def refuse_strangers(folder: Path, errors: list[DefinitionError]) -> None:
         errors += whole_file_error(folder, "the folder holds no definitions", accepted).errors
 
 
-FOLDERS: Final = ("families", "reagents", "formulations")
+FOLDERS: Final = ("families", "reagents", "formulations", "evidence")
 FILES: Final = ("sources.yaml", "interactions.yaml")
