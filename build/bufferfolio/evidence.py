@@ -6,6 +6,7 @@ error: no published number is passed over.
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from typing import Final
 
 import numpy as np
 
@@ -13,7 +14,7 @@ from bufferfolio.definitions import Library
 from bufferfolio.errors import BufferfolioError
 from bufferfolio.evidence_batches import Way
 from bufferfolio.predicted import WAYS_OF, predicted
-from bufferfolio.published import PublishedTable, TablePart, Target
+from bufferfolio.published import PublishedTable, Quantity, TablePart, Target
 from bufferfolio.water import FloatArray
 
 
@@ -74,6 +75,19 @@ class TableResult:
     def way(self) -> Way:
         """The library's own way."""
         return self.ways[0]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Measure:
+    """What the differences of a table are counted in."""
+
+    unit: str  # "" for pH and logarithms
+    decimals: int  # that are worth printing
+
+
+def measure_of(table: PublishedTable) -> Measure:
+    """Return what the differences of a table are counted in."""
+    return RATIO if table.compared_by == "ratio" else MEASURES[table.quantity]
 
 
 def compared(tables: Sequence[PublishedTable], library: Library) -> tuple[TableResult, ...]:
@@ -161,3 +175,23 @@ def _verdict(target: Target | None, misfits: Mapping[Way, Misfit]) -> Verdict | 
         largest=target.largest is None or abs(own.largest) <= target.largest,
         as_good_as_davies=round(own.root_mean_square, 3) <= round(plain.root_mean_square, 3),
     )
+
+
+RATIO: Final = Measure(unit="%", decimals=1)
+MEASURES: Final[Mapping[Quantity, Measure]] = {
+    "pH": Measure(unit="", decimals=3),
+    "pH after titrant": Measure(unit="", decimals=3),
+    "buffer value": Measure(unit="mol/L per pH", decimals=4),
+    "dilution value": Measure(unit="", decimals=3),
+    "temperature coefficient": Measure(unit="1/K", decimals=4),
+    "mean activity coefficient": Measure(unit="", decimals=3),
+    "ion activity coefficient": Measure(unit="", decimals=3),
+    "share": Measure(unit="% of the whole", decimals=2),
+    "percent": Measure(unit="% of the whole", decimals=2),
+    "-log10 share": Measure(unit="", decimals=3),
+    "CO2 over alkalinity": Measure(unit="", decimals=3),
+    "density": Measure(unit="kg/m³", decimals=4),
+    "permittivity": Measure(unit="", decimals=3),
+    "Debye-Hückel coefficient": Measure(unit="√(kg/mol)", decimals=4),
+    "pKw": Measure(unit="", decimals=3),
+}

@@ -2,7 +2,8 @@
 
 Colours come in pairs, for light and for dark pages, and reach the drawings as CSS custom
 properties: one drawing serves both, and print. Every colour holds 4.5 : 1 against its surface, so
-labels may wear it; every line style has a dash pattern of its own, so none needs its colour.
+labels may wear it; every line style has a dash pattern and a mark of its own, so none needs its
+colour.
 """
 
 from collections.abc import Sequence
@@ -17,6 +18,7 @@ class Style:
     light: str  # colour on a light page
     dark: str  # colour on a dark page
     dash: tuple[int, ...]  # lengths of stroke and gap in px; empty: solid
+    mark: str = ""  # path of a point about its centre
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -29,16 +31,18 @@ class Surface:
 
 
 STYLES: Final = (
-    Style(light="#1c5fa8", dark="#7db4f0", dash=()),
-    Style(light="#b5430e", dark="#f39a6b", dash=(10, 4)),
-    Style(light="#0a7659", dark="#5cc9a3", dash=(3, 3)),
-    Style(light="#8e3d86", dark="#d99ad3", dash=(11, 3, 2, 3)),
-    Style(light="#856500", dark="#d9b64a", dash=(6, 3)),
-    Style(light="#464e55", dark="#b9c2c9", dash=(11, 3, 2, 3, 2, 3)),
-    Style(light="#a32643", dark="#f08fa2", dash=(2, 5)),
-    Style(light="#5146a8", dark="#aea6f5", dash=(16, 5)),
-    Style(light="#5d6c10", dark="#b4c36a", dash=(6, 2, 2, 2)),
-    Style(light="#6b4a35", dark="#cfa78c", dash=(4, 6)),
+    Style(light="#1c5fa8", dark="#7db4f0", dash=(), mark="h0"),
+    Style(light="#b5430e", dark="#f39a6b", dash=(10, 4), mark="m-2.7-2.7h5.4v5.4h-5.4z"),
+    Style(light="#0a7659", dark="#5cc9a3", dash=(3, 3), mark="m0-3.7l3.5 6h-7z"),
+    Style(light="#8e3d86", dark="#d99ad3", dash=(11, 3, 2, 3), mark="m0-4l3.6 4-3.6 4-3.6-4z"),
+    Style(light="#856500", dark="#d9b64a", dash=(6, 3), mark="m-2.9-2.9l5.8 5.8m0-5.8l-5.8 5.8"),
+    Style(
+        light="#464e55", dark="#b9c2c9", dash=(11, 3, 2, 3, 2, 3), mark="m-3.7 0h7.4m-3.7-3.7v7.4"
+    ),
+    Style(light="#a32643", dark="#f08fa2", dash=(2, 5), mark="m0 3.7l3.5-6h-7z"),
+    Style(light="#5146a8", dark="#aea6f5", dash=(16, 5), mark="m-4.2 0h8.4"),
+    Style(light="#5d6c10", dark="#b4c36a", dash=(6, 2, 2, 2), mark="m0-4.2v8.4"),
+    Style(light="#6b4a35", dark="#cfa78c", dash=(4, 6), mark="m-3-3h6l-6 6h6z"),
 )
 
 # From pale to deep on a light page and from deep to bright on a dark one: the order survives a
@@ -111,6 +115,10 @@ RULES: Final = (
     "svg.figure path{fill-rule:evenodd}",
     "svg.figure .frame{fill:none;stroke:var(--figure-frame);stroke-width:1}",
     "svg.figure .line{fill:none;stroke-width:2.2;stroke-linejoin:round}",
+    "svg.figure path.point{fill-rule:nonzero;stroke-width:1.5;stroke-dasharray:none}",
+    # A point of no length, as wide as its stroke.
+    "svg.figure path.point.s0{stroke-width:6.5;stroke-linecap:round}",
+    "svg.figure.swatch.spot{width:14px;height:14px}",
     "svg.figure .mark{fill:none;stroke:var(--figure-mark);stroke-width:1}",
     "svg.figure .limit{fill:none;stroke:var(--figure-mark);stroke-width:2.4}",
     "svg.figure .iso{fill:none;stroke:var(--figure-frame);stroke-width:.8}",

@@ -70,10 +70,13 @@ class Cells:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Figure:
-    """A picture, with the words that stand in for it."""
+    """A picture, with the words that stand in for it.
+
+    Points are for pages that do not compute: `svg_figures` draws them, and nothing else does.
+    """
 
     key: str
-    kind: Literal["lines", "map"]
+    kind: Literal["lines", "map", "points"]
     title: str
     x: Axis
     y: Axis

@@ -1,7 +1,7 @@
 """The pages of the site: which there are, what each is given, and where they are written."""
 
 import time
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Final
@@ -12,11 +12,14 @@ from bufferfolio import resources
 from bufferfolio.activity import MODELS
 from bufferfolio.bokeh_figures import bokeh_script, skeletons_script
 from bufferfolio.definitions import Library
+from bufferfolio.evidence import compared
+from bufferfolio.evidence_contexts import evidence_context
 from bufferfolio.explorations import exploration_of
 from bufferfolio.family_contexts import FamilyContext, family_context
 from bufferfolio.figure_styles import stylesheet
 from bufferfolio.formatting import FILTERS
 from bufferfolio.page_parts import numbering
+from bufferfolio.published import PublishedTable
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
 from bufferfolio.sheets import sheet_of
 from bufferfolio.source_contexts import GENERAL_WORKS, HOW_KNOWN, source_rows
@@ -42,14 +45,19 @@ class PageReport:
 class Shell:
     """What the frame around a page needs to know."""
 
-    page: str  # kind: index, sheet, explorer, sources, method
+    page: str  # kind: index, sheet, explorer, sources, evidence, method
     section: str  # of the navigation; one of `SECTIONS`
     top: str  # path from the page to the folder's top: "" or "../"
     scripts: tuple[str, ...]
 
 
-def write_site(library: Library, out: Path, progress: Progress) -> tuple[PageReport, ...]:
-    """Write the whole site into `out`; `progress` is told each page before it is made."""
+def write_site(
+    library: Library, out: Path, progress: Progress, tables: Sequence[PublishedTable] = ()
+) -> tuple[PageReport, ...]:
+    """Write the whole site into `out`; `progress` is told each page before it is made.
+
+    The page of evidence compares predictions with `tables`.
+    """
     environment = environment_of(resources.templates())
     numbers = numbering(library.sources)
     with replace_folder(out) as folder:
@@ -58,6 +66,8 @@ def write_site(library: Library, out: Path, progress: Progress) -> tuple[PageRep
         writer = Writer(environment=environment, folder=folder)
         sheets, reports = _write_sheets(writer, library, numbers, progress)
         families = _write_explorers(writer, library, numbers, progress)
+        progress("evidence")
+        _write_evidence(writer, library, numbers, tables)
         progress("index, sources, method")
         index = Shell(page="index", section="formulations", top="", scripts=INDEX_SCRIPTS)
         writer.write("index.html", "index.html", index, sheets=_by_title(sheets), families=families)
@@ -66,13 +76,24 @@ def write_site(library: Library, out: Path, progress: Progress) -> tuple[PageRep
             "sources.html",
             "sources.html",
             shell,
-            rows=source_rows(library, numbers),
+            rows=source_rows(library, numbers, tables),
             how_known=HOW_KNOWN,
             general=GENERAL_WORKS,
         )
         shell = Shell(page="method", section="method", top="", scripts=())
         writer.write("method.html", "method.html", shell, models=MODELS)
     return reports
+
+
+def _write_evidence(
+    writer: "Writer",
+    library: Library,
+    numbers: Mapping[str, int],
+    tables: Sequence[PublishedTable],
+) -> None:
+    shell = Shell(page="evidence", section="evidence", top="", scripts=())
+    context = evidence_context(compared(tables, library), numbers)
+    writer.write("evidence.html", "evidence.html", shell, this=context)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -175,6 +196,7 @@ SECTIONS: Final = (
     Section(key="formulations", label="Formulations", path="index.html"),
     Section(key="families", label="Families", path="index.html#families"),
     Section(key="sources", label="Sources", path="sources.html"),
+    Section(key="evidence", label="Evidence", path="evidence.html"),
     Section(key="method", label="Method", path="method.html"),
 )
 

@@ -1,12 +1,14 @@
 """What the template of the page of sources is given: every work, and what rests on it."""
 
-from collections.abc import Iterator, Mapping
+from collections import Counter
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Final
 
 from bufferfolio.activity import MODELS
 from bufferfolio.definitions import Citation, Library, PublishedEquation, Source, Step
 from bufferfolio.formatting import chemical, plain
+from bufferfolio.published import PublishedTable
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -14,7 +16,7 @@ class UseRow:
     """One number that a source stands behind."""
 
     what: str  # "pK2 of phosphoric acid"
-    link: str  # key of the family's page; "" where there is none
+    link: str  # path of where the number stands; "" where there is none
     where: str
     how_known: str
 
@@ -36,10 +38,13 @@ class GeneralWork:
     cite: str
 
 
-def source_rows(library: Library, numbers: Mapping[str, int]) -> tuple[SourceRow, ...]:
+def source_rows(
+    library: Library, numbers: Mapping[str, int], tables: Sequence[PublishedTable] = ()
+) -> tuple[SourceRow, ...]:
     """Return every source in the order of its number."""
     found: dict[str, list[UseRow]] = {key: [] for key in library.sources}
-    for key, use in [*_of_families(library), *_of_pairs(library), *_of_reagents(library)]:
+    of_library = [*_of_families(library), *_of_pairs(library), *_of_reagents(library)]
+    for key, use in [*of_library, *_of_tables(tables)]:
         found[key].append(use)
     rows = [
         SourceRow(number=numbers[key], source=library.sources[key], uses=tuple(uses))
@@ -53,7 +58,7 @@ def _of_families(library: Library) -> Iterator[tuple[str, UseRow]]:
         for index, step in enumerate(family.steps):
             for citation, what in _of_step(step):
                 name = f"{what}, step {index + 1} of {family.label}"
-                yield citation.source.key, _use(citation, name, key)
+                yield citation.source.key, _use(citation, name, f"families/{key}.html#constants")
 
 
 def _of_step(step: Step) -> Iterator[tuple[Citation, str]]:
@@ -76,6 +81,14 @@ def _of_pairs(library: Library) -> Iterator[tuple[str, UseRow]]:
 def _of_reagents(library: Library) -> Iterator[tuple[str, UseRow]]:
     for _, reagent in sorted(library.reagents.items()):
         yield reagent.citation.source.key, _use(reagent.citation, f"reagent {reagent.label}", "")
+
+
+def _of_tables(tables: Sequence[PublishedTable]) -> Iterator[tuple[str, UseRow]]:
+    for table in tables:
+        counts = Counter(row.citation for row in table.rows)
+        for citation, count in counts.items():
+            name = f"evidence, {table.title}: {count} row{'' if count == 1 else 's'}"
+            yield citation.source.key, _use(citation, name, f"evidence.html#{table.key}")
 
 
 def _use(citation: Citation, what: str, link: str) -> UseRow:

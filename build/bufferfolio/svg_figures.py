@@ -5,6 +5,7 @@ coordinates are written by one rule (tenths of a px, halves up), and only arithm
 every machine does alike. Colours and text styles come from figure_styles.stylesheet().
 """
 
+import math
 from collections.abc import Sequence
 
 from bufferfolio.figure_layout import (
@@ -32,7 +33,10 @@ def svg(figure: Figure) -> str:
     """Return the figure as an SVG element."""
     figure = rounded(figure)
     words = f"{figure.title}. {figure.summary}"
-    inside = _lines(figure) if figure.cells is None else _map(figure, figure.cells)
+    if figure.kind == "points":
+        inside = _marks(figure) + "".join(_points(figure, each) for each in figure.series)
+    else:
+        inside = _lines(figure) if figure.cells is None else _map(figure, figure.cells)
     return (
         f'<svg class="figure" viewBox="0 0 {WIDTH} {TALL}" role="img" '
         f'aria-label="{escaped(words)}">{inside}{_axes(figure)}</svg>'
@@ -74,6 +78,25 @@ def _map(figure: Figure, cells: Cells) -> str:
 def _series(series: Series, paths: Sequence[Path]) -> str:
     drawn = "".join(path_text(each) for each in paths)
     return _path(f"line s{series.style % len(STYLES)}", drawn)
+
+
+def _points(figure: Figure, series: Series) -> str:
+    style = series.style % len(STYLES)
+    places = {}  # in order, each once: a mark on a mark cannot be seen
+    for x, y in zip(series.x.tolist(), series.y.tolist(), strict=True):
+        across_x = across(figure.x, x, FRAME.left, FRAME.right)
+        along_y = across(figure.y, y, FRAME.bottom, FRAME.top)
+        if math.isfinite(across_x) and math.isfinite(along_y):
+            places[f"M{fixed(across_x, 0)} {fixed(along_y, 0)}"] = None
+    drawn = "".join(place + STYLES[style].mark for place in places)
+    return _path(f"point s{style} t{style}", drawn)
+
+
+def swatch(style: int) -> str:
+    """Return the mark of a series of points as a small SVG element, for a legend."""
+    shown = style % len(STYLES)
+    drawn = _path(f"point s{shown} t{shown}", f"M7 7{STYLES[shown].mark}")
+    return f'<svg class="figure swatch spot" viewBox="0 0 14 14" aria-hidden="true">{drawn}</svg>'
 
 
 def _marks(figure: Figure) -> str:

@@ -10,7 +10,7 @@ from bufferfolio.command.console import counted, progress, table
 from bufferfolio.command.drafting import UNNAMED
 from bufferfolio.definitions import Library
 from bufferfolio.formatting import fixed, signed
-from bufferfolio.reading import read_library
+from bufferfolio.reading import read_evidence, read_library
 from bufferfolio.water import ZERO_CELSIUS
 
 if TYPE_CHECKING:
@@ -23,10 +23,12 @@ def build(arguments: Arguments) -> ExitCode:
     from bufferfolio.pages import write_site
 
     start = time.perf_counter()
-    library = read_library(chosen_systems(arguments), resources.systems())
+    systems = chosen_systems(arguments)
+    library = read_library(systems, resources.systems())
+    tables = read_evidence(systems, library, resources.systems())
     pieces = len(library.formulations) + len(library.families) + SHARED_PIECES
     with progress(pieces) as show:
-        reports = write_site(library, arguments.out, show)
+        reports = write_site(library, arguments.out, show, tables)
     print(report_table(library, reports))
     warnings = [*unnamed_sources(library), *sheet_warnings(reports)]
     if warnings:
@@ -73,7 +75,7 @@ def unnamed_sources(library: Library) -> Iterator[str]:
             yield f"reagent {key}: a source is still to be named"
 
 
-SHARED_PIECES: Final = 2  # what pages share; index, sources and method
+SHARED_PIECES: Final = 3  # what pages share; evidence; index, sources and method
 
 HEAD: Final = ("formulation", "pH", "at", "expected", "difference", "warnings", "time")
 RIGHT: Final = frozenset({1, 2, 3, 4, 5, 6})

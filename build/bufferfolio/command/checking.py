@@ -6,16 +6,18 @@ from bufferfolio import resources
 from bufferfolio.command.arguments import Arguments, ExitCode, chosen_systems
 from bufferfolio.command.console import counted
 from bufferfolio.errors import DefinitionErrors
-from bufferfolio.reading import read_library
+from bufferfolio.reading import read_evidence, read_library
+from bufferfolio.reading.evidence import evidence_files
 from bufferfolio.reading.files import definition_files, shown
 
 
 def check(arguments: Arguments) -> ExitCode:
     """Print one line a file; raises DefinitionErrors after them where anything is wrong."""
     systems = chosen_systems(arguments)
-    files = [shown(path) for path in definition_files(systems)]
+    files = [shown(path) for path in (*definition_files(systems), *evidence_files(systems))]
     try:
-        read_library(systems, resources.systems())
+        library = read_library(systems, resources.systems())
+        read_evidence(systems, library, resources.systems())
     except DefinitionErrors as problems:
         wrong = Counter(error.place.file for error in problems.errors)
         print_files([*files, *sorted(wrong.keys() - set(files))], wrong)
