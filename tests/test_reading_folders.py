@@ -54,7 +54,7 @@ def test_folder_without_definitions(folder):
     (folder / "elsewhere" / "deeper").mkdir(parents=True)
     assert complaints(folder / "elsewhere") == (
         "mine/elsewhere:1:1: the folder holds no definitions\n"
-        "accepted: a folder with families, reagents, formulations, sources.yaml, "
+        "accepted: a folder with families, reagents, formulations, evidence, sources.yaml, "
         "interactions.yaml, or some of them"
     )
 
@@ -65,11 +65,11 @@ def test_misspelt_folder_and_stray_file(folder):
     (folder / "source.yaml").write_text("", encoding="utf-8")
     assert complaints(folder) == (
         "mine/formulation:1:1: unknown folder; did you mean 'formulations'?\n"
-        "accepted: families, reagents, formulations\n"
+        "accepted: families, reagents, formulations, evidence\n"
         "\n"
         "mine/source.yaml:1:1: a file of this name is not read; did you mean 'sources.yaml'?\n"
         "accepted: sources.yaml, interactions.yaml; all other definitions in families, reagents, "
-        "formulations"
+        "formulations, evidence"
     )
 
 

@@ -52,7 +52,10 @@ def load_csv(path: Path, known: Sequence[str]) -> Sheet:
     for number in range(1, len(lines)):
         if not lines[number].strip():
             continue
+        before = len(errors)
         cells = _cells(lines, number, file, errors)
+        if len(errors) > before:
+            continue
         if len(cells) != len(head):
             problem = f"the row has {_cells_counted(len(cells))}, the first line {len(head)}"
             place = Place(file, number + 1, 1)

@@ -47,20 +47,26 @@ class RowReader:
     def _row(self, cells: Mapping[str, Cell]) -> PublishedValue | None:
         before = len(self.errors)
         value = self._number(cells, "value")
+        if not self._text(cells, "value"):
+            self._blame(self._anywhere(cells), "the row has no value", "the published number")
         for name in NEEDED[self.table.quantity]:
             if not self._given(cells, name):
                 problem = f"a {self.table.quantity} lacks its {name!r}"
                 accepted = f"{name}: {COLUMNS[name]}"
                 self._blame(self._anywhere(cells), problem, accepted)
         temperature = self._temperature(cells)
+        solution, constants = self._solution(cells, "contents"), self._constants(cells)
+        if solution is not None and OWN in solution.families and not constants:
+            problem = f"{solution.stated!r} has no constants of its own"
+            self._blame(self._anywhere(cells), problem, CONSTANTS)
         citation = self._citation(cells)
         row = PublishedValue(
             part=self._part(cells),
-            solution=self._solution(cells, "contents"),
+            solution=solution,
             volume=_scaled(self._number(cells, "volume"), 1e-6),
             titrant=self._solution(cells, "titrant"),
             added=_scaled(self._number(cells, "added"), 1e-6),
-            pK=self._constants(cells),
+            pK=constants,
             form=self._form(cells),
             charge=self._whole(cells, "charge"),
             ionic_strength=self._number(cells, "ionic_strength"),
@@ -163,8 +169,13 @@ class RowReader:
         text = self._text(cells, "form") or self.table.form
         if not text:
             return None
-        if text.startswith(f"{OWN} "):
-            return OWN, int(text.partition(" ")[2])
+        own, _, lost_of_own = text.partition(" ")
+        if own == OWN and lost_of_own.isdecimal():
+            count = len(self._constants(cells))
+            if int(lost_of_own) > count:
+                problem = f"{text!r} has lost more protons than the {count} constants have"
+                self._blame(self._anywhere(cells), problem, FORMS)
+            return OWN, int(lost_of_own)
         for family in self.names.families.values():
             for lost, species in enumerate(family.species):
                 if species.name == text:
