@@ -49,10 +49,10 @@ def elsewhere(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
 def test_check_prints_a_line_for_each_file(systems: Path, elsewhere: Path, capsys: Printed) -> None:
     assert run("check", str(systems)) == ExitCode.DONE
     lines = capsys.readouterr().out.splitlines()
-    files = list(systems.rglob("*.yaml"))
+    files = [*systems.rglob("*.yaml"), *systems.rglob("*.csv")]
     assert lines[-1] == f"{len(files)} files, no errors"
     assert len(lines) == len(files) + 1
-    assert all(line.endswith(".yaml: ok") for line in lines[:-1])
+    assert all(line.endswith((".yaml: ok", ".csv: ok")) for line in lines[:-1])
 
 
 def test_check_without_a_folder_takes_the_shipped_library(elsewhere: Path, capsys: Printed) -> None:

@@ -32,7 +32,7 @@ class CommandLineError(BufferfolioError):
 class Arguments:
     """The command line, read. What an action does not know has its default here."""
 
-    action: Literal["check", "build", "predict", "new"]
+    action: Literal["check", "build", "predict", "evidence", "new"]
     systems: Path | None  # None: nothing was said; see `chosen_systems`
     out: Path
     strict: bool
@@ -89,6 +89,7 @@ def _parser() -> argparse.ArgumentParser:
     _add_check(actions)
     _add_build(actions)
     _add_predict(actions)
+    _add_evidence(actions)
     _add_new(actions)
     return parser
 
@@ -165,6 +166,14 @@ def _add_predict(actions: "Actions[_Parser]") -> None:
     )
     parser.add_argument("--json", action="store_true", help="print JSON (keys: see DEVELOPERS.md)")
     parser.add_argument("--systems", type=Path, metavar="SYSTEMS", help=SYSTEMS_HELP, default=None)
+
+
+def _add_evidence(actions: "Actions[_Parser]") -> None:
+    examples = "  bufferfolio evidence\n  bufferfolio evidence --json > evidence.json"
+    summary = "compare predictions with every published table"
+    parser = _action(actions, "evidence", summary, examples)
+    parser.add_argument("systems", nargs="?", type=Path, metavar="SYSTEMS", help=SYSTEMS_HELP)
+    parser.add_argument("--json", action="store_true", help="print JSON (keys: see DEVELOPERS.md)")
 
 
 def _add_new(actions: "Actions[_Parser]") -> None:
