@@ -1,16 +1,24 @@
-"""Published numbers: the tables in tests/published/, and comparing every row of one.
+"""Published numbers: tables of the library and of tests/published/, and comparing every row of one.
 
-`differences` asks for a prediction of each row in turn, so that a row cannot be passed over: one
-without a prediction fails the test that asked.
+A table that the page of evidence shows has its home in systems/evidence/ and is named by its key;
+the others stand in tests/published/ and are named by their file. `differences` asks for a
+prediction of each row in turn, so that a row cannot be passed over: one without a prediction fails
+the test that asked.
 """
 
 import csv
 import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from pathlib import Path
 
+import yaml
+
+from bufferfolio import resources
+
 FOLDER = Path(__file__).parent / "published"
+DEFAULTS = ("source", "where", "how_known", "form", "constants")
 
 Row = Mapping[str, str]
 
@@ -30,9 +38,29 @@ class Difference:
 
 
 def rows_of(table: str) -> tuple[Row, ...]:
-    """Return every row of a table."""
-    with (FOLDER / table).open(encoding="utf-8", newline="") as lines:
+    """Return every row of a table, those of the library with what their index says of them all."""
+    if table.endswith(".csv"):
+        return _read(FOLDER / table)
+    index = _index()["tables"][table]
+    common = {name: index[name] for name in DEFAULTS if name in index}
+    if "at" in index:
+        common["celsius"] = index["at"].removesuffix(" °C")
+    rows = _read(resources.systems() / "evidence" / f"{table}.csv")
+    return tuple(
+        {**common, "table": table, **{key: value for key, value in row.items() if value}}
+        for row in rows
+    )
+
+
+def _read(path: Path) -> tuple[Row, ...]:
+    with path.open(encoding="utf-8", newline="") as lines:
         return tuple(csv.DictReader(lines))
+
+
+@lru_cache(maxsize=1)
+def _index() -> dict:  # type: ignore[type-arg]
+    text = (resources.systems() / "evidence" / "index.yaml").read_text(encoding="utf-8")
+    return yaml.safe_load(text)
 
 
 def differences(

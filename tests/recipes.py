@@ -5,26 +5,26 @@ from functools import lru_cache
 
 from bufferfolio import resources
 from bufferfolio.definitions import Ion, Library
-from bufferfolio.reading import read_library
+from bufferfolio.published import PublishedTable
+from bufferfolio.reading import read_evidence, read_library
 from bufferfolio.speciation import Mixture
 from solutions import CALCIUM, CHLORIDE, POTASSIUM, SODIUM, mixture_of
 
 # Families and strong ions of one mole; the balance of charge finds the protons.
 BRINGS: Mapping[str, tuple[Mapping[str, int], Mapping[Ion, int]]] = {
-    "KH_phthalate": ({"phthalate": 1}, {POTASSIUM: 1}),
-    "KH_tartrate": ({"tartrate": 1}, {POTASSIUM: 1}),
-    "KH2_citrate": ({"citrate": 1}, {POTASSIUM: 1}),
+    "KH phthalate": ({"phthalate": 1}, {POTASSIUM: 1}),
+    "KH tartrate": ({"tartrate": 1}, {POTASSIUM: 1}),
+    "KH2 citrate": ({"citrate": 1}, {POTASSIUM: 1}),
     "KH2PO4": ({"phosphate": 1}, {POTASSIUM: 1}),
     "Na2HPO4": ({"phosphate": 1}, {SODIUM: 2}),
     "NaHCO3": ({"carbonate": 1}, {SODIUM: 1}),
     "Na2CO3": ({"carbonate": 1}, {SODIUM: 2}),
     "Na2B4O7": ({"borate": 4}, {SODIUM: 2}),
     "H3BO3": ({"borate": 1}, {}),
-    "boric_acid": ({"borate": 1}, {}),
     "tris": ({"tris": 1}, {}),
-    "tris_HCl": ({"tris": 1}, {CHLORIDE: 1}),
-    "acetic_acid": ({"acetate": 1}, {}),
-    "Na_acetate": ({"acetate": 1}, {SODIUM: 1}),
+    "tris hydrochloride": ({"tris": 1}, {CHLORIDE: 1}),
+    "acetic acid": ({"acetate": 1}, {}),
+    "Na acetate": ({"acetate": 1}, {SODIUM: 1}),
     "Ca(OH)2": ({}, {CALCIUM: 1}),
     "NaOH": ({}, {SODIUM: 1}),
     "HCl": ({}, {CHLORIDE: 1}),
@@ -36,6 +36,12 @@ BRINGS: Mapping[str, tuple[Mapping[str, int], Mapping[Ion, int]]] = {
 def shipped() -> Library:
     """Return the shipped definitions, read once."""
     return read_library(resources.systems())
+
+
+@lru_cache(maxsize=1)
+def shipped_tables() -> tuple[PublishedTable, ...]:
+    """Return the published tables of the library, read once."""
+    return read_evidence(resources.systems(), shipped())
 
 
 def recipe(text: str, factor: float = 1.0) -> Mixture:

@@ -22,7 +22,7 @@ from bufferfolio.hazards import STATEMENTS
 from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, PageReport, write_site
 from bufferfolio.sheets import Sheet, sheet_of
 from page_trees import Element, parsed
-from recipes import shipped
+from recipes import shipped, shipped_tables
 
 LARGEST_PAGE = 200_000  # bytes, beside the scripts that pages share
 POLICY = (
@@ -35,6 +35,7 @@ FORMULATIONS = sorted(LIBRARY.formulations)
 PAGES = [
     "index.html",
     "sources.html",
+    "evidence.html",
     "method.html",
     *(f"families/{key}.html" for key in FAMILIES),
     *(f"formulations/{key}.html" for key in FORMULATIONS),
@@ -42,7 +43,7 @@ PAGES = [
 
 
 def built(library: Library, out: Path) -> tuple[PageReport, ...]:
-    return write_site(library, out, lambda name: None)
+    return write_site(library, out, lambda name: None, shipped_tables())
 
 
 @dataclass(frozen=True)
