@@ -82,7 +82,7 @@ def _series(series: Series, paths: Sequence[Path]) -> str:
 
 def _points(figure: Figure, series: Series) -> str:
     style = series.style % len(STYLES)
-    places = {}  # in order, each once: a mark on a mark cannot be seen
+    places: dict[str, None] = {}  # in order, each once: a mark on a mark cannot be seen
     for x, y in zip(series.x.tolist(), series.y.tolist(), strict=True):
         across_x = across(figure.x, x, FRAME.left, FRAME.right)
         along_y = across(figure.y, y, FRAME.bottom, FRAME.top)
