@@ -14,6 +14,7 @@ KINDS: Final = (
     "formulations/sanitising-bath.html",
     "families/citrate.html",
     "sources.html",
+    "evidence.html",
     "method.html",
 )
 

@@ -15,6 +15,7 @@ KINDS: Final = (
     "formulations/citrate-phosphate.html",
     "families/phosphate.html",
     "sources.html",
+    "evidence.html",
     "method.html",
 )
 

@@ -14,6 +14,7 @@ KINDS = [
     "formulations/sanitising-bath.html",
     "families/pyrophosphate.html",
     "sources.html",
+    "evidence.html",
     "method.html",
 ]
 SMALLEST_TARGET = 24  # px, WCAG 2.2 success criterion 2.5.8
