@@ -1,7 +1,7 @@
 """Molar masses of the shipped reagents, added up by hand from IUPAC atomic weights."""
 
 import re
-from collections import Counter
+from collections import defaultdict
 
 import numpy as np
 
@@ -9,15 +9,15 @@ from published_tables import Row, assert_within, differences, rows_of
 from recipes import shipped
 
 
-def atoms_of(formula: str) -> Counter[str]:
-    """Return the atoms of a formula such as (NH4)2SO4 or Na2HPO4·7H2O."""
-    atoms: Counter[str] = Counter()
+def atoms_of(formula: str) -> dict[str, float]:
+    """Return the atoms of a formula such as (NH4)2SO4, Na2HPO4·7H2O or K2CO3·1.5H2O."""
+    atoms: dict[str, float] = defaultdict(float)
     for part in formula.split("·"):
-        count, plain = re.fullmatch(r"(\d*)(.+)", part).groups()
+        count, plain = re.fullmatch(r"([\d.]*)(.+)", part).groups()
         while "(" in plain:
             plain = re.sub(r"\(([^()]+)\)(\d*)", lambda group: group[1] * int(group[2] or 1), plain)
         for element, number in re.findall(r"([A-Z][a-z]?)(\d*)", plain):
-            atoms[element] += int(count or 1) * int(number or 1)
+            atoms[element] += float(count or 1) * int(number or 1)
     return atoms
 
 
