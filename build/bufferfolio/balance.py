@@ -16,6 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from bufferfolio.activity import ActivityModel, LongRange
+from bufferfolio.exact_sums import exact_charge
 from bufferfolio.speciation import Mixture
 from bufferfolio.temperature import LN10, Constants
 from bufferfolio.water import FloatArray
@@ -34,6 +35,8 @@ class Problem:
     totals: FloatArray  # (families, n), mol/kg
     net: FloatArray  # n, charge of the strong ions, mol/kg
     net_rest: FloatArray  # n, what rounding left out of `net`
+    positive: FloatArray  # n, `net` where it is positive, else next to nothing
+    negative: FloatArray  # n, −`net` likewise
     strength: FloatArray  # n, Σ z² m of the strong ions, mol/kg
     hydrogen: FloatArray  # n, m(H+) / a(H+) of an uncharged world: 1 but for interactions
     hydroxide: FloatArray  # n, m(OH-) a(H+) likewise: Kw but for interactions
@@ -81,30 +84,6 @@ class Residuals:
     strength_u: FloatArray
 
 
-def two_sum(a: FloatArray, b: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return a + b and what rounding left out of it.
-
-    Shapes: a and b S; results S.
-    Units: those of the arguments.
-    Raises: nothing.
-    Source: Knuth, The Art of Computer Programming, vol. 2, 4.2.2, theorem B.
-    """
-    total = a + b
-    of_b = total - a
-    return total, (a - (total - of_b)) + (b - of_b)
-
-
-def _exact_charge(charges: Sequence[int], amounts: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Sum z m so exactly that opposite ions cancel and leave what is really left."""
-    total = np.zeros(amounts.shape[1:])
-    rest = np.zeros(amounts.shape[1:])
-    for charge, amount in zip(charges, amounts, strict=True):
-        for _ in range(abs(charge)):
-            total, lost = two_sum(total, np.copysign(1.0, charge) * amount)
-            rest = rest + lost
-    return two_sum(total, rest)
-
-
 def prepare(
     mixture: Mixture, constants: Constants, model: ActivityModel
 ) -> tuple[Problem, tuple[int, ...]]:
@@ -126,15 +105,17 @@ def prepare(
 
     def rows(values: FloatArray) -> FloatArray:
         count = values.shape[0]
-        return np.array([flat(values[row]) for row in range(count)]).reshape(count, size)
+        return np.broadcast_to(_aligned(values, len(shape)), (count, *shape)).reshape(count, size)
 
-    net, rest = _exact_charge([ion.charge for ion in mixture.ions], mixture.molalities)
+    net, rest = exact_charge([ion.charge for ion in mixture.ions], mixture.molalities)
     problem = Problem(
         charges=tuple(family.charge for family in mixture.families),
         K=tuple(rows(np.exp(-LN10 * pK)) for pK in constants.pK),
         totals=rows(mixture.totals),
         net=flat(net),
         net_rest=flat(rest),
+        positive=np.maximum(flat(net), TINY),
+        negative=np.maximum(-flat(net), TINY),
         strength=flat(mixture.strong_strength),
         hydrogen=np.ones(size),
         hydroxide=flat(np.exp(-LN10 * constants.pKw)),
@@ -142,6 +123,12 @@ def prepare(
         long_range=model.long_range,
     )
     return problem, shape
+
+
+def _aligned(values: FloatArray, dimensions: int) -> FloatArray:
+    """Put axes of length one between the first axis and S, so that S broadcasts."""
+    missing = dimensions - values.ndim + 1
+    return values.reshape(values.shape[0], *([1] * missing), *values.shape[1:])
 
 
 def part(problem: Problem, index: Index) -> Problem:
@@ -152,6 +139,8 @@ def part(problem: Problem, index: Index) -> Problem:
         totals=problem.totals[:, index],
         net=problem.net[index],
         net_rest=problem.net_rest[index],
+        positive=problem.positive[index],
+        negative=problem.negative[index],
         strength=problem.strength[index],
         hydrogen=problem.hydrogen[index],
         hydroxide=problem.hydroxide[index],
@@ -234,8 +223,8 @@ def sums(problem: Problem, x: FloatArray, u: FloatArray) -> Sums:
     h = np.exp(x)
     hydrogen, hydroxide = problem.hydrogen * h * g, problem.hydroxide / h * g
     both = hydrogen + hydroxide
-    plus = Sum(np.maximum(problem.net, TINY) + hydrogen, hydrogen, hydrogen)
-    minus = Sum(np.maximum(-problem.net, TINY) + hydroxide, -hydroxide, hydroxide)
+    plus = Sum(problem.positive + hydrogen, hydrogen, hydrogen)
+    minus = Sum(problem.negative + hydroxide, -hydroxide, hydroxide)
     squares = Sum(problem.strength + both, hydrogen - hydroxide, both)
     for charge, K, total in zip(problem.charges, problem.K, problem.totals, strict=True):
         positive, negative, square = _family_sums(charge, weights(charge, K, h, g), total)

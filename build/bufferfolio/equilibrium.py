@@ -5,12 +5,9 @@ and that I is the ionic strength of what is there. `newton` takes the steps; the
 does not settle are bracketed (`bracketing`); nothing unconverged is returned.
 """
 
-import math
 from collections.abc import Sequence
-from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 from enum import IntEnum
-from os import cpu_count
 from typing import Final
 
 import numpy as np
@@ -27,7 +24,6 @@ from bufferfolio.water import FloatArray
 
 # Smaller blocks waste time on call overhead, larger ones fall out of the processor's cache.
 BLOCK: Final = 8192
-SMALLEST: Final = 2048  # mixtures that are not worth a thread
 OFFSET_TOLERANCE: Final = 1e-13  # in log10 of an activity coefficient
 OFFSET_ROUNDS: Final = 200
 
@@ -84,28 +80,18 @@ def solve(
 def _solve_blocks(
     problem: Problem, guess: tuple[FloatArray, FloatArray] | None = None
 ) -> tuple[FloatArray, FloatArray]:
-    """Solve block by block, on every processor: numpy lets go of the interpreter's lock."""
+    """Solve block by block; threads gain nothing, so short are the steps between two locks."""
     n = problem.size
     ln_h, ln_i = np.empty(n), np.empty(n)
-    processors = cpu_count() or 1
-    # As many blocks as keep every processor busy to the end, none above its best size.
-    rounds = max(1, math.ceil(n / (BLOCK * processors)))
-    size = n if n <= SMALLEST else max(1, math.ceil(n / (rounds * processors)))
-
-    def one(start: int) -> NDArray[np.intp]:
-        span = slice(start, min(start + size, n))
+    unsettled: list[NDArray[np.intp]] = []
+    for start in range(0, n, BLOCK):
+        span = slice(start, min(start + BLOCK, n))
         begin = None if guess is None else (guess[0][span], guess[1][span])
         ln_h[span], ln_i[span], left = newton(part(problem, span), begin)
-        return start + left
-
-    starts = range(0, n, max(size, 1))
-    if len(starts) > 1:
-        with ThreadPoolExecutor(processors) as pool:
-            unsettled = np.concatenate(list(pool.map(one, starts)))
-    else:
-        unsettled = one(0)
-    if unsettled.size:
-        ln_h[unsettled], ln_i[unsettled] = bracket(part(problem, unsettled))
+        unsettled.append(start + left)
+    left_over = np.concatenate(unsettled) if unsettled else np.empty(0, dtype=np.intp)
+    if left_over.size:
+        ln_h[left_over], ln_i[left_over] = bracket(part(problem, left_over))
     return ln_h, ln_i
 
 

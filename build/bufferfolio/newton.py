@@ -5,12 +5,13 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from bufferfolio.balance import Problem, added, part, residuals, two_sum, weighted, weights
+from bufferfolio.balance import Problem, added, part, residuals, weighted, weights
+from bufferfolio.exact_sums import two_sum
 from bufferfolio.temperature import LN10
 from bufferfolio.water import FloatArray
 
 ROUNDS: Final = 40
-HALVINGS: Final = 2  # of the pH scale before the first step; each is a quarter of a step's work
+HALVINGS: Final = 4  # of the pH scale before the first step; each is a quarter of a step's work
 LONGEST_STEP: Final = 6.0  # in ln a(H+); farther than that a tangent says little
 # Convergence is quadratic: a step this small leaves an error of its square.
 SETTLED: Final = 1e-8
@@ -69,15 +70,15 @@ def newton(
             slope = state.charge_x * state.strength_u - state.charge_u * state.strength_x
             step_x = (state.charge_u * state.strength - state.charge * state.strength_u) / slope
             step_u = (state.charge * state.strength_x - state.charge_x * state.strength) / slope
-        # Hopping to and fro across a steep part: halve the last hop instead.
-        # A last, tiny step may well turn round.
-        far = np.maximum(0.5 * np.abs(last), SETTLED)
-        hopping = (step_x * last < 0.0) & (np.abs(step_x) > far)
-        last = np.where(hopping, -0.5 * last, _clipped(step_x, LONGEST_STEP))
+        # Hopping to and fro across a steep part: more than half the way back, unless the step is
+        # so tiny that it may well turn round. The last hop is halved instead.
+        hopping = step_x * last < -0.5 * last * last - SETTLED * SETTLED
+        step = _clipped(step_x, LONGEST_STEP)
+        last = np.where(hopping, -0.5 * last, step) if hopping.any() else step
         x = x + last
         u = u + _clipped(step_u, 2.0)
         # A negative slope is a root that dilution does not lead to: left to the bracket.
-        settled = (np.abs(step_x) < SETTLED) & (np.abs(step_u) < SETTLED) & (slope > 0.0)
+        settled = (np.maximum(np.abs(step_x), np.abs(step_u)) < SETTLED) & (slope > 0.0)
         still = np.flatnonzero(~settled)
         # Taking arrays apart costs as much as half a round: wait until it pays.
         if active.size < still.size * PAYS:
