@@ -179,7 +179,7 @@ def _titration_words(sides: Sequence[Side]) -> str:
                 "limit of use"
             )
         else:
-            parts.append(f"{name} does not lead to the limit of use")
+            parts.append(f"{name} does not lead to the limit of use before the batch has doubled")
         hidden = sum(not point.visible for point in side.equivalences)
         if hidden:
             parts.append(f"{hidden} equivalence point(s) with {name} do not show on the curve")

@@ -40,7 +40,7 @@ class Side:
     curve: Curve
     contrast: Curve  # the same amounts into water that holds nothing
     equivalences: tuple[Equivalence, ...]
-    reserve: float  # mol per kg of water until the limit of use; NaN where it is never reached
+    reserve: float  # mol per kg of water until the limit of use; NaN: not before it has doubled
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -100,9 +100,9 @@ def _side(subject: Subject, titrant: Titrant, added: Addition, temperature: floa
     limits = subject.formulation.use_pH
     limit = limits.high if titrant.direction == "upward" else limits.low
     common = (temperature, subject.model, subject.interactions)
-    reserve = amount_to_reach(subject.mixture, added, limit, *common)
+    reached = amount_to_reach(subject.mixture, added, limit, *common)
     points = equivalences(subject.mixture, added, *common)
-    amount = np.linspace(0.0, titration_range(reserve, points, added.water), TITRATION_POINTS)
+    amount = np.linspace(0.0, titration_range(reached, points, added.water), TITRATION_POINTS)
     kelvin = np.array(temperature)
     rest = (kelvin, subject.model, subject.interactions)
     return Side(
@@ -111,8 +111,19 @@ def _side(subject: Subject, titrant: Titrant, added: Addition, temperature: floa
         curve=titrate(subject.mixture, added, amount, *rest),
         contrast=titrate(pure_water(subject.mixture), added, amount, *rest),
         equivalences=tuple(point for point in points if point.amount <= amount[-1]),
-        reserve=reserve,
+        reserve=practical(reached, added.water),
     )
+
+
+def practical(amount: float, water: float) -> float:
+    """Return an amount of titrant, or NaN where its water more than doubles the batch.
+
+    Shapes: scalars.
+    Units: amount mol per kg of water; water kg brought by one mole of titrant.
+    Raises: nothing.
+    Source: own choice; beyond it dilution moves the pH and not the titrant.
+    """
+    return amount if amount * water <= MOST_DILUTION else float("nan")
 
 
 def titration_range(reserve: float, points: Sequence[Equivalence], water: float) -> float:
@@ -193,7 +204,7 @@ def sheet_of(formulation: Formulation, library: Library) -> Sheet:
         sweep=sweep_of(subject, temperature),
         sides=sides,
         surface=surface_of(subject, sides),
-        warnings=_warnings(subject, reference, deviation, drift, sides),
+        warnings=_warnings(subject, reference, deviation, drift),
     )
 
 
@@ -202,7 +213,6 @@ def _warnings(
     reference: State,
     deviation: float | None,
     drift: Drift,
-    sides: Sequence[Side],
 ) -> tuple[str, ...]:
     formulation = subject.formulation
     found = []
@@ -226,11 +236,6 @@ def _warnings(
         )
     if not formulation.use_pH.holds(reference.pH):
         found.append(f"computed pH {reference.pH:.2f} lies outside the limits of use")
-    found.extend(
-        f"{side.titrant.label} never brings it to the limit of use"
-        for side in sides
-        if not side.reserve > 0.0
-    )
     return tuple(found)
 
 

@@ -108,8 +108,9 @@
       const added = subject.additions.find((each) => each.direction === direction);
       if (added === undefined) continue;
       const limit = direction === "upward" ? limits.high : limits.low;
-      const reserve = bf.titration.amountToReach(
+      const reached = bf.titration.amountToReach(
         mixture, added, limit, temperature, model, interactions);
+      const reserve = bf.sheets.practical(reached, added.water);
       const name = "reserve_" + direction;
       if (!(reserve > 0)) {
         for (const place of [name, name + "_volume", "contrast_" + direction]) {

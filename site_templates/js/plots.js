@@ -182,7 +182,7 @@
       parts.push(side.reserve > 0
         ? formatting.significant(side.reserve * MILLI) + " mmol of " + name +
           " per kg of water lead to the limit of use"
-        : name + " does not lead to the limit of use");
+        : name + " does not lead to the limit of use before the batch has doubled");
       const hidden = side.equivalences.filter((each) => !each.visible).length;
       if (hidden > 0) {
         parts.push(hidden + " equivalence point(s) with " + name + " do not show on the curve");

@@ -97,9 +97,9 @@
   function sideOf(subject, added, temperature) {
     const { mixture, model, interactions, use_pH: limits } = subject;
     const limit = added.direction === "upward" ? limits.high : limits.low;
-    const reserve = amountToReach(mixture, added, limit, temperature, model, interactions);
+    const reached = amountToReach(mixture, added, limit, temperature, model, interactions);
     const points = equivalences(mixture, added, temperature, model, interactions);
-    const range = titrationRange(reserve, points, added.water);
+    const range = titrationRange(reached, points, added.water);
     const amount = linspace(0, range, TITRATION_POINTS);
     return {
       titrant: added,
@@ -107,8 +107,17 @@
       curve: titrate(mixture, added, amount, temperature, model, interactions),
       contrast: titrate(pureWater(mixture), added, amount, temperature, model, interactions),
       equivalences: points.filter((/** @type {Equivalence} */ point) => point.amount <= range),
-      reserve,
+      reserve: practical(reached, added.water),
     };
+  }
+
+  /** An amount of titrant, or NaN where its water more than doubles the batch.
+   * @param {number} amount mol per kg of water
+   * @param {number} water kg brought by one mole of titrant
+   * @returns {number}
+   */
+  function practical(amount, water) {
+    return amount * water <= MOST_DILUTION ? amount : NaN;
   }
 
   /** How far a titration is drawn: beyond the reserve and the last visible equivalence.
@@ -201,5 +210,5 @@
     };
   }
 
-  bf.sheets = { linspace, driftOf, sweepOf, sidesOf, surfaceOf, surfaceRange, sheetOf };
+  bf.sheets = { linspace, driftOf, sweepOf, sidesOf, practical, surfaceOf, surfaceRange, sheetOf };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));
