@@ -12,6 +12,7 @@ from solutions import CALCIUM, CHLORIDE, POTASSIUM, SODIUM, mixture_of
 
 # Families and strong ions of one mole; the balance of charge finds the protons.
 BRINGS: Mapping[str, tuple[Mapping[str, int], Mapping[Ion, int]]] = {
+    "K tetraoxalate": ({"oxalate": 2}, {POTASSIUM: 1}),
     "KH phthalate": ({"phthalate": 1}, {POTASSIUM: 1}),
     "KH tartrate": ({"tartrate": 1}, {POTASSIUM: 1}),
     "KH2 citrate": ({"citrate": 1}, {POTASSIUM: 1}),

@@ -83,7 +83,16 @@ PK_TOLERANCE = {
     ("preservative-acids", "acetate"): 0.055,
     ("preservative-acids", "lactate"): 0.055,
     ("preservative-acids", "benzoate"): 0.055,
+    ("preservative-acids", "propionate"): 0.055,
+    # Sources of sorbic acid disagree by 0.15: 4.76 is shipped, 4.6 follows from others. [0.132]
+    ("preservative-acids", "sorbate"): 0.15,
+    # The shipped equation (6.98 at 25 °C) and handbooks (7.05) part by 0.07; the table, at 7.01,
+    # goes on to 32 °C where the equation ends at 25 °C. [0.030]
+    ("hydrogen-sulfide", ""): 0.07,
 }
+# One row of sorbic acid (97.4 at pH 3) follows from a pK of 4.57, the other four from 4.63 to 4.68:
+# the table contradicts itself by up to 0.11. [0.186 in all, from the shipped 4.76]
+STRAY_ROW, STRAY = ("preservative-acids", "sorbate", "3"), 0.11
 # g CO2 to a mol of it over g CaCO3 to an equivalent: what turns CO2/HCO3- into the printed factor.
 CO2_TO_ALKALINITY = 44.0095 / 50.0436
 
@@ -94,6 +103,7 @@ WHOLE = {
     "hypochlorous-acid": 100.0,
     "inorganic-carbon": 1.0,
     "preservative-acids": 100.0,
+    "hydrogen-sulfide": 100.0,
 }
 
 
@@ -119,7 +129,9 @@ def test_fractions_agree_with_published_tables(table: str) -> None:
     def tolerance(item: Difference) -> float:
         row, value = item.row, item.computed
         slope = LN10 * (value * (1.0 - value / WHOLE[table]) if table in WHOLE else value)
-        return 1.001 * half_digit(row["value"]) + PK_TOLERANCE[table, row.get("part", "")] * slope
+        part = row.get("part", "")
+        stray = STRAY if (table, part, row["pH"]) == STRAY_ROW else 0.0
+        return 1.001 * half_digit(row["value"]) + (PK_TOLERANCE[table, part] + stray) * slope
 
     assert_within(differences(table, predict), tolerance)
 
