@@ -189,7 +189,8 @@ def test_predict_shows_pH_with_its_scale_and_what_is_there(
 def test_predict_in_json_has_the_documented_keys(elsewhere: Path, capsys: Printed) -> None:
     found = predicted(capsys, "tris-assay", "--temperature", "277.15 K", "37 °C")
     assert list(found) == [
-        "formulation", "title", "revision", "model", "pH_scale", "added", "states",
+        "formulation", "title", "revision", "model", "model_chosen_by", "pH_scale", "added",
+        "states",
     ]  # fmt: skip
     states = found["states"]
     assert [state["temperature_celsius"] for state in states] == [4.0, 37.0]

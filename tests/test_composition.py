@@ -21,8 +21,14 @@ WATER = 0.018015268  # kg/mol
 
 
 def portion(key: str, amount: float, basis: str = "mol") -> Portion:
+    reagent = shipped().reagents[key]
     return Portion(
-        reagent=shipped().reagents[key], amount=amount, basis=basis, stated="", place=NOWHERE
+        reagent=reagent,
+        amount=amount,
+        basis=basis,
+        stated="",
+        weighed=reagent.stock is None,
+        place=NOWHERE,
     )
 
 

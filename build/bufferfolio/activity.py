@@ -74,6 +74,22 @@ def specific_ion(
     return term, slope
 
 
+def name_of(model: ActivityModel) -> ModelName:
+    """Return the name by which files and pages call a model."""
+    return next(name for name, known in MODELS.items() if known is model)
+
+
+def for_ionic_strength(ionic_strength: float) -> ModelName:
+    """Return the model for a solution whose file names none: the simplest that is trusted there.
+
+    Shapes: scalar.
+    Units: mol/kg; NaN where no ionic strength was found.
+    Raises: nothing.
+    Source: the project's own rule, see DEVELOPERS.md.
+    """
+    return "davies" if ionic_strength <= MODELS["davies"].trusted_to else "specific-ion"
+
+
 MODELS: Final[Mapping[ModelName, ActivityModel]] = {
     "ideal": ActivityModel(
         label="ideal solution",

@@ -154,6 +154,7 @@ class Portion:
     amount: float  # of the reagent's formula, in the unit that `basis` names
     basis: Literal["mol", "mol/kg"]  # mol in the make-up, or mol per kg of its water
     stated: str  # as the file wrote it: "10.12 g"
+    weighed: bool  # on a balance: every solid, and a liquid whose amount is stated as a mass
     place: Place
 
 
@@ -201,7 +202,7 @@ class Formulation:
     use_pH: Interval
     titrants: tuple[Titrant, ...]
     medium: Literal["dilute"]
-    model: ModelName
+    model: ModelName | None  # None: it follows from the ionic strength
     cautions: tuple[str, ...]
     accepted_dangers: tuple[str, ...]  # dangerous combinations the file explains
     place: Place

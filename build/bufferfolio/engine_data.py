@@ -6,9 +6,17 @@ constants; results in the cases likewise, because they are compared to 1e-9.
 
 from typing import Final
 
-from bufferfolio.activity import MODELS
+from bufferfolio.activity import name_of
 from bufferfolio.composition import Addition, moles
-from bufferfolio.definitions import Family, Interaction, Ion, PublishedEquation, Step, Titrant
+from bufferfolio.definitions import (
+    Family,
+    Interaction,
+    Ion,
+    Portion,
+    PublishedEquation,
+    Step,
+    Titrant,
+)
 from bufferfolio.explorations import Exploration, exploration_of
 from bufferfolio.sheets import Sheet
 from bufferfolio.subjects import State, Subject, state_at
@@ -67,22 +75,11 @@ def subject_data(subject: Subject) -> Data:
         "totals": mixture.totals.tolist(),
         "ions": [_ion_data(ion) for ion in mixture.ions],
         "molalities": mixture.molalities.tolist(),
-        "model": formulation.model,
+        "model": name_of(subject.model),
         "interactions": [_interaction_data(pair) for pair in subject.interactions],
         "water": subject.water,
         "portions": [
-            {
-                "label": portion.reagent.label,
-                "amount": moles(portion, subject.water),
-                "mass": portion.reagent.molar_mass
-                / (
-                    portion.reagent.stock.mass_fraction
-                    if portion.reagent.stock
-                    else portion.reagent.purity
-                ),
-                "density": portion.reagent.stock.density if portion.reagent.stock else None,
-            }
-            for portion in formulation.make_up.portions
+            _portion_data(portion, subject.water) for portion in formulation.make_up.portions
         ],
         "titrants": [
             _titrant_data(titrant, added)
@@ -100,6 +97,17 @@ def subject_data(subject: Subject) -> Data:
             "high": formulation.use_temperature.high,
         },
         "use_pH": {"low": formulation.use_pH.low, "high": formulation.use_pH.high},
+    }
+
+
+def _portion_data(portion: Portion, water: float) -> Data:
+    reagent, stock = portion.reagent, portion.reagent.stock
+    return {
+        "label": reagent.label,
+        "amount": moles(portion, water),
+        "mass": reagent.molar_mass / (stock.mass_fraction if stock else reagent.purity),
+        # None: it is weighed, whether solid or liquid.
+        "density": None if stock is None or portion.weighed else stock.density,
     }
 
 
@@ -197,6 +205,6 @@ def explorer_data(exploration: Exploration) -> Data:
         "temperature": exploration.temperature,
         "total": exploration.total,
         "ionic_strength": exploration.ionic_strength,
-        "model": next(name for name, model in MODELS.items() if model is exploration.model),
+        "model": name_of(exploration.model),
         "checks": explorer_checks(exploration.family),
     }

@@ -103,7 +103,9 @@ def _amount(portion: Portion, water: float) -> str:
     reagent = portion.reagent
     share = reagent.stock.mass_fraction if reagent.stock else reagent.purity
     kilograms = moles(portion, water) * reagent.molar_mass / share
-    return volume(kilograms / reagent.stock.density) if reagent.stock else mass(kilograms)
+    if portion.weighed or reagent.stock is None:
+        return mass(kilograms)
+    return volume(kilograms / reagent.stock.density)
 
 
 def reagents_of(formulation: Formulation) -> tuple[Reagent, ...]:

@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from bufferfolio.activity import ActivityModel
 from bufferfolio.composition import addition, contents, mixed
 from bufferfolio.definitions import Formulation, Library, Reagent, Titrant
 from bufferfolio.subjects import State, Subject, state_at, subject_of
@@ -35,6 +36,7 @@ class SpeciesAmount:
 class Prediction:
     """A formulation at one temperature, after every dose. NaN where there is no solution."""
 
+    model: ActivityModel
     state: State
     species: tuple[SpeciesAmount, ...]  # H+, OH-, each family's forms, other ions
 
@@ -48,7 +50,10 @@ def predictions(
     """Return a formulation at each temperature (K), after all doses went in."""
     subject = _dosed(subject_of(formulation, library), library, doses)
     states = [state_at(subject, kelvin) for kelvin in temperatures]
-    return tuple(Prediction(state=state, species=_species(subject, state)) for state in states)
+    return tuple(
+        Prediction(model=subject.model, state=state, species=_species(subject, state))
+        for state in states
+    )
 
 
 def _dosed(subject: Subject, library: Library, doses: Sequence[Dose]) -> Subject:

@@ -36,6 +36,7 @@ from bufferfolio.page_parts import (
 )
 from bufferfolio.plots import SHEET_FIGURES
 from bufferfolio.sheets import Sheet, Side
+from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
 from bufferfolio.temperature import constants_at
 
@@ -108,6 +109,7 @@ class SheetContext:
     sides: tuple[SideRow, ...]
     constants: tuple[ConstantRow, ...]
     pairs: tuple[PairRow, ...]
+    pairs_possible: int  # of a cation and an anion, titrants included
     hazards: tuple[HazardRow, ...]
     releases: tuple[tuple[str, tuple[str, ...]], ...]  # reagent, what it may release
     sources: tuple[Cited, ...]  # that this page cites, by number
@@ -145,7 +147,7 @@ def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
         status=STATUS_WORDS[reference.status],
         status_state=reference.status.name.lower().replace("_", "-"),
         estimate=_estimate(sheet),
-        model=MODELS[formulation.model],
+        model=subject.model,
         batch=batch,
         portions=portions,
         species=_species(sheet),
@@ -153,6 +155,7 @@ def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
         sides=tuple(_side(sheet, side) for side in sheet.sides),
         constants=constants,
         pairs=pairs,
+        pairs_possible=_possible_pairs(subject.mixture),
         hazards=hazard_rows(reagents),
         releases=tuple((item.label, item.releases) for item in reagents if item.releases),
         sources=_sources(constants, pairs, portions),
@@ -266,6 +269,13 @@ def _pairs(sheet: Sheet, numbers: Mapping[str, int]) -> tuple[PairRow, ...]:
         )
         for pair in sheet.subject.interactions
     )
+
+
+def _possible_pairs(mixture: Mixture) -> int:
+    charges = [1, -1]  # of water's own ions
+    charges += [form.charge for family in mixture.families for form in family.species]
+    charges += [ion.charge for ion in mixture.ions]
+    return sum(charge > 0 for charge in charges) * sum(charge < 0 for charge in charges)
 
 
 def _words(

@@ -5,10 +5,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from bufferfolio.activity import MODELS, ActivityModel
+from bufferfolio.activity import MODELS, ActivityModel, for_ionic_strength
 from bufferfolio.buffering import buffer_capacity
 from bufferfolio.composition import Addition, addition, contents, mixed, scaled, water_mass
-from bufferfolio.definitions import Formulation, Interaction, Library
+from bufferfolio.definitions import Formulation, Interaction, Library, ModelName
 from bufferfolio.equilibrium import Status, solve
 from bufferfolio.speciation import Forms, Mixture, forms_at
 from bufferfolio.temperature import constants_at
@@ -47,7 +47,7 @@ def subject_of(formulation: Formulation, library: Library) -> Subject:
         formulation=formulation,
         mixture=mixture,
         water=water_mass(formulation.make_up),
-        model=MODELS[formulation.model],
+        model=MODELS[formulation.model or _chosen(formulation, mixture)],
         interactions=tuple(
             pair
             for pair in library.interactions
@@ -58,6 +58,13 @@ def subject_of(formulation: Formulation, library: Library) -> Subject:
             for titrant in formulation.titrants
         ),
     )
+
+
+def _chosen(formulation: Formulation, mixture: Mixture) -> ModelName:
+    """Return the model that the ionic strength asks for, at the recipe's own strength."""
+    constants = constants_at(mixture.families, np.array(reference_temperature(formulation)))
+    solved = solve(mixture, constants, MODELS["davies"])
+    return for_ionic_strength(float(solved.ionic_strength))
 
 
 def reference_temperature(formulation: Formulation) -> float:

@@ -152,6 +152,7 @@
     texts.set("water", size(batch.amount * factor));
     subject.portions.forEach((portion, at) => {
       const kilograms = portion.amount * portion.mass * factor * values.strength;
+      // Without a density it is weighed, as a solid is and a liquid whose recipe is in g or kg.
       const amount = portion.density === null
         ? mass(kilograms) : volume(kilograms / portion.density);
       texts.set("portion " + at + " amount", amount);

@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Final
 
 from bufferfolio import resources
-from bufferfolio.activity import MODELS
+from bufferfolio.activity import name_of
 from bufferfolio.command.arguments import Arguments, CommandLineError, ExitCode, chosen_systems
 from bufferfolio.command.console import table
 from bufferfolio.definitions import Formulation, Library
@@ -78,8 +78,9 @@ def as_text(
     formulation: Formulation, additions: Sequence[str], found: Sequence[Prediction]
 ) -> Iterator[str]:
     """Yield the lines that people read."""
-    model = MODELS[formulation.model].label
-    yield f"{formulation.title}, revision {formulation.revision}; activities: {model}"
+    model = found[0].model.label
+    chosen = "" if formulation.model else ", chosen by the ionic strength"
+    yield f"{formulation.title}, revision {formulation.revision}; activities: {model}{chosen}"
     for addition in additions:
         yield f"added to the whole make-up: {addition}"
     for prediction in found:
@@ -135,7 +136,8 @@ def as_json(
         "formulation": formulation.key,
         "title": formulation.title,
         "revision": formulation.revision,
-        "model": formulation.model,
+        "model": name_of(found[0].model),
+        "model_chosen_by": "ionic strength" if formulation.model is None else "file",
         "pH_scale": PH_SCALE,
         "added": list(additions),
         "states": [_state(formulation, prediction) for prediction in found],

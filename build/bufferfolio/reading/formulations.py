@@ -81,9 +81,15 @@ def _make_up(shape: MakeUpShape, reagents: Known[Reagent], complaints: Complaint
             complaints.at((*location, "amount"), f"amount {problem.problem}", problem.accepted)
             continue
         place = complaints.document.place(location)
-        stated = portion.amount.stated
         portions.append(
-            Portion(reagent=reagent, amount=amount, basis=basis, stated=stated, place=place)
+            Portion(
+                reagent=reagent,
+                amount=amount,
+                basis=basis,
+                stated=portion.amount.stated,
+                weighed=reagent.stock is None or portion.amount.dimension in MASSES,
+                place=place,
+            )
         )
     if len(portions) != len(shape.reagents):
         return None
@@ -174,6 +180,10 @@ def portion_amount(
     return measured.value * volume * factor, "mol"
 
 
+# Amounts for which a liquid, too, goes on a balance.
+MASSES: Final = tuple(
+    each.name for each in (quantities.MASS, quantities.MASS_PER_VOLUME, quantities.PERCENT)
+)
 SOLID_UNITS: Final = "g, mg, kg, mol, mmol, mol/L, mmol/L, mol/kg, mmol/kg, g/L, mg/L, %"
 WEIGHED_UNITS: Final = "g, mg, kg, mL, L, mol, mmol, mol/kg, mmol/kg, %"
 LITRES_PER_M3: Final = 1000.0

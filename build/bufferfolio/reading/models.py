@@ -226,7 +226,9 @@ class FormulationShape(Shape):
     revision: fields.Revision = Field(description="Issue of the recipe, as people refer to it.")
     purpose: Text = Field(description="What it is for, in one or two sentences.")
     medium: Literal["dilute"] = Field(description="What fixes the constants.")
-    model: ModelName = Field(description="The activity model.")
+    model: ModelName | None = Field(
+        None, description="The activity model; without it, it follows from the ionic strength."
+    )
     make_up: MakeUpShape = Field(description="How it is put together.")
     expected: ExpectedShape | None = Field(None, description="The pH it is meant to have.")
     use: UseShape = Field(description="The temperatures and the pH within which it may be used.")
