@@ -13,14 +13,17 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
 
+import numpy as np
 import pytest
 
 from bufferfolio import resources
 from bufferfolio.definitions import Library
-from bufferfolio.formatting import celsius, fixed, milli, percent, significant
+from bufferfolio.formatting import celsius, chemical, fixed, milli, percent, significant
 from bufferfolio.hazards import STATEMENTS
 from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, PageReport, write_site
+from bufferfolio.search_words import typed
 from bufferfolio.sheets import Sheet, sheet_of
+from bufferfolio.temperature import pK_at
 from page_trees import Element, parsed
 from recipes import shipped, shipped_tables
 
@@ -34,6 +37,7 @@ FAMILIES = sorted(LIBRARY.families)
 FORMULATIONS = sorted(LIBRARY.formulations)
 PAGES = [
     "index.html",
+    "reagents.html",
     "sources.html",
     "evidence.html",
     "method.html",
@@ -285,11 +289,95 @@ def test_the_index_lists_everything_and_can_be_filtered(
         use = sheet.subject.formulation.use_temperature
         assert float(row["data-temperature-low"]) == pytest.approx(use.low - 273.15)
         assert float(row["data-temperature-high"]) == pytest.approx(use.high - 273.15)
-        assert row["data-text"] == row["data-text"].casefold()
-        assert sheet.subject.formulation.title.casefold() in row["data-text"]
+        assert set(map(typed, sheet.subject.formulation.title.split())) <= {
+            *row["data-text"].split(),
+            "",
+        }
     thumbnails = index.all("span", **{"class": "thumbnail"})
     assert len(thumbnails) == len(FAMILIES)
     assert all(each.one("svg") for each in thumbnails)
+
+
+def test_the_index_finds_families_and_reagents_by_all_their_names(folio: Site) -> None:
+    index = folio.pages["index.html"]
+    found = {
+        entry.all("a")[0].attributes["href"]: entry.attributes for entry in index.all(data_entry="")
+    }
+    assert len(found) == len(FORMULATIONS) + len(FAMILIES) + len(LIBRARY.reagents)
+    for key, reagent in LIBRARY.reagents.items():
+        entry = found[f"reagents.html#reagent-{key}"]
+        names = [reagent.label, reagent.formula, *reagent.synonyms, reagent.cas or ""]
+        for word in " ".join(names).split():
+            assert typed(word) in entry["data-text"]
+        steps = [step for family in reagent.families for step in LIBRARY.families[family].steps]
+        assert len(entry.get("data-pk", "").split()) == len(steps)
+    for key, family in LIBRARY.families.items():
+        entry = found[f"families/{key}.html"]
+        names = [family.label, *family.synonyms, *(form.name for form in family.species)]
+        for word in " ".join(names).split():
+            assert typed(word) in entry["data-text"]
+        pK = [float(text) for text in entry["data-pk"].split()]
+        reference = np.array(298.15)
+        expected = [float(pK_at(step, reference)) for step in family.steps]
+        assert pK == pytest.approx(expected, abs=0.0051)
+
+
+@pytest.mark.parametrize(
+    ("written", "plain"),
+    [
+        ("Na2HPO4·7H2O", "na2hpo47h2o"),
+        ("Na₂HPO₄·7H₂O", "na2hpo47h2o"),
+        ("HPO₄²⁻", "hpo42-"),
+        ("HPO4-2", "hpo4-2"),
+        ("7558-79-4", "7558-79-4"),
+    ],
+)
+def test_words_are_compared_as_they_are_typed(written: str, plain: str) -> None:
+    assert typed(written) == plain
+
+
+def test_the_page_of_reagents_says_all_of_each(folio: Site) -> None:
+    page = folio.pages["reagents.html"]
+    for key, reagent in LIBRARY.reagents.items():
+        row = page.one("tr", id=f"reagent-{key}")
+        cells = {cell.attributes["data-label"]: cell for cell in row.all("td")}
+        assert reagent.label in row.one("th").text()
+        assert chemical(reagent.formula) in row.one("th").text()
+        assert cells["CAS"].text() == (reagent.cas or "—")
+        assert cells["Molar mass"].text() == fixed(1000.0 * reagent.molar_mass, 2)
+        brought = {a.attributes["href"] for a in cells["Brings"].all("a")}
+        assert brought == {f"families/{family}.html" for family in reagent.families}
+        assert all(chemical(ion.name) in cells["Brings"].text() for ion in reagent.ions)
+        said = cells["Hazards"].one("span").text()
+        assert said == (", ".join(reagent.hazards) or "none assigned")
+        assert " ".join(reagent.handling.split()) in cells["Hazards"].text()
+        used = {a.attributes["href"] for a in cells["Used in"].all("a")}
+        assert used == {
+            f"formulations/{name}.html"
+            for name, formulation in LIBRARY.formulations.items()
+            if key in {portion.reagent.key for portion in formulation.make_up.portions}
+            or key in {titrant.reagent.key for titrant in formulation.titrants}
+        }
+    codes = {code for reagent in LIBRARY.reagents.values() for code in reagent.hazards}
+    rows = page.one("table", **{"class": "hazards"}).one("tbody").all("tr")
+    assert {row.one("th").text(): row.one("td").text() for row in rows} == {
+        code: STATEMENTS[code] for code in codes
+    }
+
+
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_a_sheet_says_who_chose_its_model_and_what_counts_as_zero(
+    folio: Site, sheets: Mapping[str, Sheet], key: str
+) -> None:
+    text = folio.pages[f"formulations/{key}.html"].one("main").text()
+    chosen = LIBRARY.formulations[key].model is None
+    assert ("this one was chosen by the ionic strength" in text) == chosen
+    assert ("The file names this model." in text) != chosen
+    subject = sheets[key].subject
+    assert ("pair counts as zero" in text) == subject.model.uses_interactions
+    if subject.model.uses_interactions and subject.interactions:
+        cited = {pair.citation.source.cite for pair in subject.interactions}
+        assert all(cite in text for cite in cited)
 
 
 def test_every_source_is_listed_with_what_rests_on_it(folio: Site) -> None:

@@ -19,6 +19,7 @@ from bufferfolio.page_parts import (
     json_text,
     plot_of,
 )
+from bufferfolio.search_words import family_words, searchable
 from bufferfolio.svg_figures import thumbnail
 
 
@@ -36,6 +37,7 @@ class FamilyContext:
     sources: tuple[Cited, ...]
     reagents: tuple[Reagent, ...]  # that bring it
     formulations: tuple[Formulation, ...]  # that hold it
+    words: str  # that the index looks through
     page_data: Markup
 
 
@@ -68,5 +70,6 @@ def family_context(
             for _, formulation in sorted(library.formulations.items())
             if any(family.key in p.reagent.families for p in formulation.make_up.portions)
         ),
+        words=searchable(family_words(family)),
         page_data=json_text(data),
     )

@@ -82,7 +82,7 @@ def portion_rows(subject: Subject, numbers: Mapping[str, int]) -> tuple[PortionR
         PortionRow(
             reagent=portion.reagent,
             formula=chemical(portion.reagent.formula),
-            grade=_grade(portion.reagent),
+            grade=grade_of(portion.reagent),
             stated=portion.stated,
             amount=_amount(portion, subject.water),
             source=cited(portion.reagent.citation, "reagent", numbers),
@@ -91,7 +91,8 @@ def portion_rows(subject: Subject, numbers: Mapping[str, int]) -> tuple[PortionR
     )
 
 
-def _grade(reagent: Reagent) -> str:
+def grade_of(reagent: Reagent) -> str:
+    """Return purity, or concentration and density; nothing for a pure solid."""
     stock = reagent.stock
     if stock is not None:
         share, density = 100.0 * stock.mass_fraction, stock.density / 1000.0

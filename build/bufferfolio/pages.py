@@ -18,8 +18,10 @@ from bufferfolio.explorations import exploration_of
 from bufferfolio.family_contexts import FamilyContext, family_context
 from bufferfolio.figure_styles import stylesheet
 from bufferfolio.formatting import FILTERS
+from bufferfolio.make_up_contexts import hazard_rows
 from bufferfolio.page_parts import numbering
 from bufferfolio.published import PublishedTable
+from bufferfolio.reagent_contexts import ReagentRow, reagent_rows
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
 from bufferfolio.sheets import sheet_of
 from bufferfolio.source_contexts import GENERAL_WORKS, HOW_KNOWN, source_rows
@@ -45,7 +47,7 @@ class PageReport:
 class Shell:
     """What the frame around a page needs to know."""
 
-    page: str  # kind: index, sheet, explorer, sources, evidence, method
+    page: str  # kind: index, sheet, explorer, reagents, sources, evidence, method
     section: str  # of the navigation; one of `SECTIONS`
     top: str  # path from the page to the folder's top: "" or "../"
     scripts: tuple[str, ...]
@@ -68,9 +70,18 @@ def write_site(
         families = _write_explorers(writer, library, numbers, progress)
         progress("evidence")
         _write_evidence(writer, library, numbers, tables)
-        progress("index, sources, method")
+        progress("index, reagents, sources, method")
         index = Shell(page="index", section="formulations", top="", scripts=INDEX_SCRIPTS)
-        writer.write("index.html", "index.html", index, sheets=_by_title(sheets), families=families)
+        reagents = reagent_rows(library, numbers)
+        writer.write(
+            "index.html",
+            "index.html",
+            index,
+            sheets=_by_title(sheets),
+            families=families,
+            reagents=reagents,
+        )
+        _write_reagents(writer, reagents)
         shell = Shell(page="sources", section="sources", top="", scripts=())
         writer.write(
             "sources.html",
@@ -83,6 +94,12 @@ def write_site(
         shell = Shell(page="method", section="method", top="", scripts=())
         writer.write("method.html", "method.html", shell, models=MODELS)
     return reports
+
+
+def _write_reagents(writer: "Writer", rows: Sequence[ReagentRow]) -> None:
+    shell = Shell(page="reagents", section="reagents", top="", scripts=())
+    hazards = hazard_rows([row.reagent for row in rows])
+    writer.write("reagents.html", "reagents.html", shell, rows=rows, hazards=hazards)
 
 
 def _write_evidence(
@@ -195,6 +212,7 @@ class Section:
 SECTIONS: Final = (
     Section(key="formulations", label="Formulations", path="index.html"),
     Section(key="families", label="Families", path="index.html#families"),
+    Section(key="reagents", label="Reagents", path="reagents.html"),
     Section(key="sources", label="Sources", path="sources.html"),
     Section(key="evidence", label="Evidence", path="evidence.html"),
     Section(key="method", label="Method", path="method.html"),

@@ -35,6 +35,7 @@ from bufferfolio.page_parts import (
     plot_of,
 )
 from bufferfolio.plots import SHEET_FIGURES
+from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
@@ -285,8 +286,8 @@ def _words(
     for family in families:
         words += [family.label, family.key, *family.synonyms]
     for reagent in reagents:
-        words += [reagent.label, reagent.formula]
-    return " ".join(words).casefold()
+        words += reagent_words(reagent)
+    return searchable(words)
 
 
 def _sources(

@@ -80,7 +80,12 @@ def _of_pairs(library: Library) -> Iterator[tuple[str, UseRow]]:
 
 def _of_reagents(library: Library) -> Iterator[tuple[str, UseRow]]:
     for _, reagent in sorted(library.reagents.items()):
-        yield reagent.citation.source.key, _use(reagent.citation, f"reagent {reagent.label}", "")
+        yield (
+            reagent.citation.source.key,
+            _use(
+                reagent.citation, f"reagent {reagent.label}", f"reagents.html#reagent-{reagent.key}"
+            ),
+        )
 
 
 def _of_tables(tables: Sequence[PublishedTable]) -> Iterator[tuple[str, UseRow]]:

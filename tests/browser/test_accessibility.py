@@ -13,6 +13,7 @@ KINDS: Final = (
     "index.html",
     "formulations/sanitising-bath.html",
     "families/citrate.html",
+    "reagents.html",
     "sources.html",
     "evidence.html",
     "method.html",

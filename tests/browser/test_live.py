@@ -4,7 +4,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from playwright.sync_api import expect
+from playwright.sync_api import Page, expect
 
 from bufferfolio.buffering import henderson_hasselbalch
 from bufferfolio.definitions import Library
@@ -213,22 +213,80 @@ def test_the_make_up_follows_batch_and_strength(visitor: Visitor) -> None:
     assert "batch-unit=m3" in page.evaluate("location.hash")
 
 
-def test_the_index_is_filtered_by_words_pH_and_temperature(visitor: Visitor) -> None:
+def counts(page: Page) -> dict[str, tuple[int, int]]:
+    """Return shown and all of each group, as the status says, after comparing it with the page."""
+    found = {}
+    for group in ("formulations", "families", "reagents"):
+        said, every = map(int, shown(page, f"shown-{group}").split(" of "))
+        entries = page.locator(f'[data-group="{group}"] [data-entry]')
+        assert entries.count() == every
+        visible = entries.evaluate_all("(all) => all.filter((e) => e.checkVisibility()).length")
+        assert visible == said
+        assert page.locator(f'[data-group="{group}"]').is_visible() == (said > 0)
+        found[group] = (said, every)
+    return found
+
+
+def named(page: Page, group: str) -> list[str]:
+    return page.locator(f'[data-group="{group}"] [data-entry]:visible a').all_inner_texts()
+
+
+def test_the_index_is_searched_by_words_pH_and_temperature(visitor: Visitor) -> None:
     page = visitor.open("index.html")
-    rows = page.locator("tr[data-text]")
-    every = rows.count()
-    assert shown(page, "shown") == f"{every} of {every}"
-    page.locator('[data-filter="text"]').fill("tris ASSAY")
-    expect(page.locator("tr[data-text]:visible")).to_have_count(1)
-    assert shown(page, "shown") == f"1 of {every}"
-    page.locator('[data-filter="ph"]').fill("2")
-    expect(page.locator("tr[data-text]:visible")).to_have_count(0)
+    text, pH = page.locator('[data-filter="text"]'), page.locator('[data-filter="ph"]')
+    assert all(said == every > 40 for said, every in counts(page).values())
+    text.fill("corrin ASSAY")
+    assert named(page, "formulations") == ["Corrin assay buffer, cold and warm"]
+    assert counts(page)["families"][0] == counts(page)["reagents"][0] == 0
+    pH.fill("2")
+    assert [said for said, _ in counts(page).values()] == [0, 0, 0]
     expect(page.locator("[data-filter-empty]")).to_be_visible()
-    page.locator('[data-filter="text"]').fill("")
-    page.locator('[data-filter="ph"]').fill("8,2")
-    some = page.locator("tr[data-text]:visible").count()
-    assert 1 <= some < every
+    text.fill("")
+    pH.fill("8,2")
+    some = counts(page)
+    assert all(1 <= said < every for said, every in some.values())
+    assert {"Tris", "HEPES"} <= set(named(page, "families"))
+    assert "acetic acid" not in named(page, "families")
+    pH.fill("7.4 to 9")
+    wide = counts(page)
+    assert wide["families"][0] > some["families"][0]
+    pH.fill("8,2")
     page.locator('[data-filter="temperature"]').fill("3")
-    assert page.locator("tr[data-text]:visible").count() <= some
-    page.locator('[data-filter="ph"]').fill("acid")
-    expect(page.get_by_text("“acid” is not a number")).to_be_visible()
+    cold = counts(page)
+    assert cold["formulations"][0] < some["formulations"][0]
+    assert cold["families"] == some["families"]
+    pH.fill("acid")
+    expect(page.get_by_text("“acid” is neither a number nor a range")).to_be_visible()
+    page.locator('[data-filter="temperature"]').fill("cold")
+    expect(page.get_by_text("“cold” is not a number")).to_be_visible()
+    assert all(said == every for said, every in counts(page).values())
+
+
+@pytest.mark.parametrize(
+    ("typed", "key"),
+    [
+        ("Na2HPO4", "disodium-hydrogen-phosphate"),
+        ("Na2HPO4", "disodium-hydrogen-phosphate-heptahydrate"),
+        ("na2hpo4.7h2o", "disodium-hydrogen-phosphate-heptahydrate"),
+        ("Na2HPO4 7H2O", "disodium-hydrogen-phosphate-heptahydrate"),
+        ("Na2HPO4*7H2O", "disodium-hydrogen-phosphate-heptahydrate"),
+        ("Na₂HPO₄·7H₂O", "disodium-hydrogen-phosphate-heptahydrate"),
+        ("7681-52-9", "sodium-hypochlorite-solution"),
+        ("bleach", "sodium-hypochlorite-solution"),
+    ],
+)
+def test_a_reagent_is_found_however_it_is_typed(visitor: Visitor, typed: str, key: str) -> None:
+    page = visitor.open("index.html")
+    page.locator('[data-filter="text"]').fill(typed)
+    found = page.locator(f'[href="reagents.html#reagent-{key}"]')
+    expect(found).to_be_visible()
+    assert 1 <= counts(page)["reagents"][0] <= 6
+    found.click()
+    expect(page.locator(f"#reagent-{key}")).to_be_in_viewport()
+
+
+def test_a_family_is_found_by_one_of_its_species(visitor: Visitor) -> None:
+    page = visitor.open("index.html")
+    for typed in ("HPO4-2", "HPO₄²⁻", "orthophosphate"):
+        page.locator('[data-filter="text"]').fill(typed)
+        assert named(page, "families") == ["phosphoric acid"], typed

@@ -13,6 +13,7 @@ KINDS = [
     "formulations/plain-water.html",
     "formulations/sanitising-bath.html",
     "families/pyrophosphate.html",
+    "reagents.html",
     "sources.html",
     "evidence.html",
     "method.html",
