@@ -139,7 +139,7 @@ def test_a_missed_expectation_and_narrow_limits_are_told() -> None:
     formulation = shipped().formulations["tris-assay"]
     wrong = replace(
         formulation,
-        expected=Expectation(pH=7.0, temperature=298.15, tolerance=0.05),
+        expected=Expectation(pH=7.0, temperature=298.15, tolerance=0.05, origin="computed"),
         use_temperature=replace(formulation.use_temperature, high=373.15),
         use_pH=replace(formulation.use_pH, low=4.0, high=8.0),
     )

@@ -10,6 +10,7 @@ from typing import Literal
 from bufferfolio.errors import Place
 
 HowKnown = Literal["seen", "seen-secondary", "recalled", "computed"]
+Origin = Literal["computed", "published", "measured", "not stated"]
 ModelName = Literal["ideal", "davies", "specific-ion"]
 
 
@@ -176,6 +177,7 @@ class Expectation:
     pH: float
     temperature: float  # K
     tolerance: float  # in pH, what the chemist accepts
+    origin: Origin  # where the pH comes from; a computed one proves nothing about the model
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -110,7 +110,9 @@ def main() -> None:
     if chromium is None:
         sys.exit("no Chromium was found")
     with tempfile.TemporaryDirectory() as folder, sync_playwright() as playwright:
-        site = Path(sys.argv[1]) if len(sys.argv) > 1 else built_site(Path(folder) / "site")
+        site = (
+            Path(sys.argv[1]).resolve() if len(sys.argv) > 1 else built_site(Path(folder) / "site")
+        )
         name = sys.argv[2] if len(sys.argv) > 2 else "formulations/citrate-phosphate.html"
         administrator = hasattr(os, "geteuid") and os.geteuid() == 0
         arguments = ["--disable-gpu", *(["--no-sandbox"] if administrator else [])]

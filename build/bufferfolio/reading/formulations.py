@@ -48,7 +48,12 @@ def formulation(
         make_up=make_up,
         expected=None
         if expected is None
-        else Expectation(pH=expected.pH, temperature=expected.at, tolerance=expected.tolerance),
+        else Expectation(
+            pH=expected.pH,
+            temperature=expected.at,
+            tolerance=expected.tolerance,
+            origin=expected.origin,
+        ),
         use_temperature=Interval(low=shape.use.temperature[0], high=shape.use.temperature[1]),
         use_pH=Interval(low=shape.use.pH[0], high=shape.use.pH[1]),
         titrants=titrants,

@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Field, RootModel
 
-from bufferfolio.definitions import HowKnown, ModelName
+from bufferfolio.definitions import HowKnown, ModelName, Origin
 from bufferfolio.reading import fields, measures
 from bufferfolio.reading.fields import Key, Text
 from bufferfolio.reading.measures import Number, Positive
@@ -198,6 +198,10 @@ class ExpectedShape(Shape):
     pH: measures.PHValue = Field(description="The pH that is expected.")
     at: measures.WaterTemperature = Field(description="The temperature where it is expected.")
     tolerance: Positive = Field(description="How far off, in pH, is still accepted.")
+    origin: Origin = Field(
+        default="not stated",
+        description="Where the pH comes from: computed, published, measured or not stated.",
+    )
 
 
 class UseShape(Shape):
