@@ -28,7 +28,7 @@ def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item
         folder = item.path.relative_to(TESTS).parts[0]
         if folder == "browser":
             item.add_marker("browser")
-        if item.path.name.startswith("test_benchmark") or folder == "benchmarks":
+        if folder == "benchmarks":
             item.add_marker("benchmark")
     if config.getoption("--no-browser"):
         left_out = [item for item in items if item.get_closest_marker("browser")]

@@ -11,9 +11,8 @@ import pytest
 from benchmarks import solver
 from bufferfolio.equilibrium import solve
 
-# In processor time of all threads, which other programs on the machine disturb less; measured are
-# 16 to 25 and 500 to 800. The requirements (20 and 1000 on the clock of two processors at rest) are
-# for solver.py to tell.
+# In processor time, which other programs on the machine disturb less; measured on a machine at rest
+# are 26 to 56 and 1,007 to 1,373. The requirements (20 and 1,000) are for solver.py to tell.
 LEAST_FIND_ROOT, LEAST_BRENTQ = 8.0, 250.0
 
 
