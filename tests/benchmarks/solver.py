@@ -209,7 +209,7 @@ def compare(name: str, mixture: Mixture, turns: int, singles: int) -> tuple[floa
             lambda: by_brentq(mixture, constants, singles, careful=True),
         ),
     }
-    pH = ways["this solver"][1]()  # the first call pays for imports and threads
+    pH = ways["this solver"][1]()  # the first call pays for imports
     taken: dict[str, list[tuple[float, float]]] = {way: [] for way in ways}
     for _ in range(turns):
         for way, (points, work) in ways.items():
