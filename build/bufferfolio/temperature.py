@@ -8,7 +8,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from bufferfolio.definitions import Family, PublishedEquation, ReferenceConstants, Step
-from bufferfolio.water import FloatArray, debye_huckel, pKw_at
+from bufferfolio.water import (
+    FloatArray,
+    debye_huckel,
+    debye_huckel_and_slope,
+    pKw_and_slope,
+    pKw_at,
+)
 
 GAS_CONSTANT: Final = 8.314462618  # J/(mol K), CODATA 2018, exact
 LN10: Final = float(np.log(10.0))
@@ -24,6 +30,15 @@ class Constants:
     pKw: FloatArray  # S
     debye_huckel: FloatArray  # S, (kg/mol)^0.5
     in_range: BoolArray  # S, whether every source vouches for its constant there
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ConstantSlopes:
+    """How the constants of water and of some families change with temperature."""
+
+    pK: tuple[FloatArray, ...]  # one array (steps, *S) a family, 1/K
+    pKw: FloatArray  # S, 1/K
+    debye_huckel: FloatArray  # S, (kg/mol)^0.5/K
 
 
 def pK_at(step: Step, temperature: FloatArray) -> FloatArray:
@@ -77,4 +92,46 @@ def constants_at(families: Sequence[Family], temperature: FloatArray) -> Constan
     pK = tuple(np.stack([pK_at(step, kelvin) for step in family.steps]) for family in families)
     return Constants(
         pK=pK, pKw=pKw_at(kelvin), debye_huckel=debye_huckel(kelvin), in_range=in_range
+    )
+
+
+def pK_slope(step: Step, temperature: FloatArray) -> FloatArray:
+    """Return how the pK of one ionisation step changes with temperature.
+
+    Shapes: temperature S; result S.
+    Units: temperature K; result 1/K.
+    Raises: nothing.
+    Source: derivative of `pK_at`; with an enthalpy, van 't Hoff's equation.
+    """
+    law = step.law
+    if isinstance(law, PublishedEquation):
+        of_equation: FloatArray = (
+            law.linear
+            + (law.logarithm - (law.inverse + 2.0 * law.inverse_square / temperature) / temperature)
+            / temperature
+        )
+        return of_equation
+    away = temperature - law.temperature
+    enthalpy = (law.enthalpy or 0.0) + (law.heat_capacity or 0.0) * away
+    result: FloatArray = -enthalpy / (GAS_CONSTANT * LN10 * temperature * temperature)
+    return result
+
+
+def constant_slopes_at(families: Sequence[Family], temperature: FloatArray) -> ConstantSlopes:
+    """Return how every constant that a mixture of these families needs changes with temperature.
+
+    Shapes: temperature S; result see `ConstantSlopes`.
+    Units: temperature K; results see `ConstantSlopes`.
+    Raises: nothing.
+    Source: derivatives of what `constants_at` returns.
+    """
+    kelvin = np.asarray(temperature, dtype=float)
+    pK = tuple(
+        np.array(
+            [pK_slope(step, kelvin) + np.zeros(kelvin.shape) for step in family.steps]
+        ).reshape(len(family.steps), *kelvin.shape)
+        for family in families
+    )
+    return ConstantSlopes(
+        pK=pK, pKw=pKw_and_slope(kelvin)[1], debye_huckel=debye_huckel_and_slope(kelvin)[1]
     )

@@ -10,11 +10,12 @@
  * @typedef {{name: string, label: string, charge: number}} Species
  * @typedef {{key: string, charge: number, species: Species[], steps: Step[]}} Family
  * @typedef {{pK: number[][], pKw: number, debye_huckel: number, in_range: boolean}} Constants
+ * @typedef {{pK: number[][], pKw: number, debye_huckel: number}} ConstantSlopes  each by K
  */
 (function (bf) {
   "use strict";
 
-  const { debyeHuckel, pKwAt } = bf.water;
+  const { debyeHuckel, debyeHuckelAndSlope, pKwAndSlope, pKwAt } = bf.water;
 
   const GAS_CONSTANT = 8.314462618; // J/(mol K), CODATA 2018, exact
   const LN10 = Math.LN10;
@@ -80,5 +81,36 @@
     };
   }
 
-  bf.temperature = { GAS_CONSTANT, LN10, pKAt, constantsAt };
+  /** How the pK of one ionisation step changes with temperature. Mirrors `pK_slope`.
+   * Source: derivative of `pKAt`; with an enthalpy, van 't Hoff's equation.
+   * @param {Step} step
+   * @param {number} temperature K
+   * @returns {number} 1/K
+   */
+  function pKSlope(step, temperature) {
+    const law = step.law;
+    if (law.kind === "equation") {
+      const inverse = (law.inverse + (2 * law.inverse_square) / temperature) / temperature;
+      return law.linear + (law.logarithm - inverse) / temperature;
+    }
+    const away = temperature - law.temperature;
+    const enthalpy = (law.enthalpy || 0) + (law.heat_capacity || 0) * away;
+    return -enthalpy / (GAS_CONSTANT * LN10 * temperature * temperature);
+  }
+
+  /** How every constant that a mixture of these families needs changes with temperature.
+   * Mirrors `constant_slopes_at`.
+   * @param {Family[]} families
+   * @param {number} temperature K
+   * @returns {ConstantSlopes}
+   */
+  function constantSlopesAt(families, temperature) {
+    return {
+      pK: families.map((family) => family.steps.map((step) => pKSlope(step, temperature))),
+      pKw: pKwAndSlope(temperature).slope,
+      debye_huckel: debyeHuckelAndSlope(temperature).slope,
+    };
+  }
+
+  bf.temperature = { GAS_CONSTANT, LN10, pKAt, pKSlope, constantsAt, constantSlopesAt };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));
