@@ -191,6 +191,16 @@ class Titrant:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Tolerances:
+    """How well people weigh, measure and read at a place; each is a k = 2 interval."""
+
+    weighing: float | None = None  # relative, of each mass; None: not stated, here and below
+    volume: float | None = None  # relative, of each volume
+    temperature: float | None = None  # K
+    meter: float | None = None  # in pH
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Formulation:
     """Reagents in water, what is expected of them, and how they are used and corrected."""
 
@@ -207,6 +217,7 @@ class Formulation:
     model: ModelName | None  # None: it follows from the ionic strength
     cautions: tuple[str, ...]
     accepted_dangers: tuple[str, ...]  # dangerous combinations the file explains
+    tolerances: Tolerances = Tolerances()
     place: Place
 
 

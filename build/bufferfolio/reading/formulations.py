@@ -12,6 +12,7 @@ from bufferfolio.definitions import (
     Portion,
     Reagent,
     Titrant,
+    Tolerances,
 )
 from bufferfolio.reading import quantities
 from bufferfolio.reading.dangers import dangers
@@ -61,8 +62,21 @@ def formulation(
         model=shape.model,
         cautions=tuple(shape.cautions),
         accepted_dangers=tuple(shape.explains),
+        tolerances=_tolerances(shape),
         place=document.root.place,
     ), complaints
+
+
+def _tolerances(shape: FormulationShape) -> Tolerances:
+    stated = shape.tolerances
+    if stated is None:
+        return Tolerances()
+    return Tolerances(
+        weighing=stated.weighing,
+        volume=stated.volume,
+        temperature=stated.temperature,
+        meter=stated.meter,
+    )
 
 
 def _make_up(shape: MakeUpShape, reagents: Known[Reagent], complaints: Complaints) -> MakeUp | None:

@@ -119,6 +119,17 @@ WaterTemperature: TypeAlias = Annotated[
     PlainValidator(checked(_quantity(quantities.WATER_TEMPERATURE))),
     WithJsonSchema(_quantity_schema(quantities.WATER_TEMPERATURE)),
 ]
+TemperatureDifference: TypeAlias = Annotated[
+    float,
+    PlainValidator(checked(_quantity(quantities.TEMPERATURE_DIFFERENCE))),
+    WithJsonSchema(_quantity_schema(quantities.TEMPERATURE_DIFFERENCE)),
+]
+PHDifference: TypeAlias = Annotated[
+    float,
+    PlainValidator(checked(_number)),
+    AfterValidator(_bounded(0.0001, 2.0, "a difference of pH from 0.0001 to 2")),
+    WithJsonSchema({"type": "number", "minimum": 0.0001, "maximum": 2}),
+]
 Enthalpy: TypeAlias = Annotated[
     float,
     PlainValidator(checked(_quantity(quantities.ENTHALPY))),

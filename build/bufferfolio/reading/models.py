@@ -223,6 +223,19 @@ class TitrantShape(Shape):
     )
 
 
+class TolerancesShape(Shape):
+    """How well people weigh, measure and read there, each as a k = 2 interval."""
+
+    weighing: measures.Share | None = Field(None, description="Of each mass, such as 0.5 %.")
+    volume: measures.Share | None = Field(None, description="Of each volume, such as 1 %.")
+    temperature: measures.TemperatureDifference | None = Field(
+        None, description="Of the thermometer, such as 0.5 °C."
+    )
+    meter: measures.PHDifference | None = Field(
+        None, description="Of the meter after its calibration, in pH, such as 0.02."
+    )
+
+
 class FormulationShape(Shape):
     """Reagents in water, what is expected of them, and how they are used and corrected."""
 
@@ -237,6 +250,9 @@ class FormulationShape(Shape):
     expected: ExpectedShape | None = Field(None, description="The pH it is meant to have.")
     use: UseShape = Field(description="The temperatures and the pH within which it may be used.")
     correct_with: list[TitrantShape] = Field([], description="What corrects a batch.")
+    tolerances: TolerancesShape | None = Field(
+        None, description="How well it is weighed, measured and read; usual values without it."
+    )
     cautions: list[Text] = Field([], description="What the people who use it must know.")
     explains: list[fields.Danger] = Field(
         [], description="Dangerous combinations that the cautions explain, as reagents name them."

@@ -148,6 +148,21 @@ TEMPERATURE: Final = Dimension(
 WATER_TEMPERATURE: Final = Dimension(
     "temperature", "kelvin", _THERMOMETERS, "25 °C", 268.15, 373.15, "-5 °C to 100 °C: liquid water"
 )
+TEMPERATURE_DIFFERENCE: Final = Dimension(
+    "difference of temperature",
+    "kelvin",
+    {
+        "°C": "delta_degree_Celsius",
+        "degC": "delta_degree_Celsius",
+        "K": "kelvin",
+        "°F": "delta_degree_Fahrenheit",
+        "degF": "delta_degree_Fahrenheit",
+    },
+    "0.5 °C",
+    0.001,
+    20.0,
+    "a difference from 0.001 to 20 °C",
+)
 ENTHALPY: Final = Dimension(
     "enthalpy", "J/mol", {"kJ/mol": "kJ/mol", "J/mol": "J/mol"}, "-0.41 kJ/mol"
 )
