@@ -18,8 +18,10 @@ from bufferfolio.definitions import (
     Titrant,
 )
 from bufferfolio.explorations import Exploration, exploration_of
+from bufferfolio.recipes import Part, Recipe
 from bufferfolio.sheets import Sheet
 from bufferfolio.subjects import State, Subject, state_at
+from bufferfolio.tolerances import ASSUMED, Care, step_doubt
 
 Data = dict[str, object]
 
@@ -63,7 +65,12 @@ def _step_data(step: Step) -> Data:
             "enthalpy": law.enthalpy,
             "heat_capacity": law.heat_capacity,
         }
-    return {"law": numbers, "valid_temperature": valid}
+    doubt = step_doubt(step)
+    return {
+        "law": numbers,
+        "valid_temperature": valid,
+        "doubt": {"pK": doubt.pK, "enthalpy": doubt.enthalpy, "stated": doubt.stated},
+    }
 
 
 def subject_data(subject: Subject) -> Data:
@@ -97,6 +104,40 @@ def subject_data(subject: Subject) -> Data:
             "high": formulation.use_temperature.high,
         },
         "use_pH": {"low": formulation.use_pH.low, "high": formulation.use_pH.high},
+        "recipe": _recipe_data(subject.recipe),
+        "care": _care_data(subject.care),
+        "doubts": {"pKw": ASSUMED["pKw"].value, "activity": ASSUMED["activity"].value},
+        "accepted_dangers": list(formulation.accepted_dangers),
+    }
+
+
+def _recipe_data(recipe: Recipe) -> Data:
+    return {
+        "parts": [_part_data(part) for part in recipe.parts],
+        "water": recipe.water,
+        "counted": recipe.counted,
+        "weighed": recipe.weighed,
+    }
+
+
+def _part_data(part: Part) -> Data:
+    return {
+        "key": part.key,
+        "label": part.label,
+        "added": _addition_data(part.added),
+        "amount": part.amount,
+        "doubt": part.doubt,
+        "releases": list(part.releases),
+    }
+
+
+def _care_data(care: Care) -> Data:
+    return {
+        "weighing": care.weighing,
+        "volume": care.volume,
+        "temperature": care.temperature,
+        "meter": care.meter,
+        "stated": list(care.stated),
     }
 
 
@@ -124,6 +165,13 @@ def _titrant_data(titrant: Titrant, added: Addition) -> Data:
         "label": titrant.label,
         "reagent": titrant.reagent.label,
         "direction": titrant.direction,
+        "releases": list(titrant.reagent.releases),
+        **_addition_data(added),
+    }
+
+
+def _addition_data(added: Addition) -> Data:
+    return {
         "families": [family.key for family in added.families],
         "per_family": list(added.per_family),
         "ions": [_ion_data(ion) for ion in added.ions],

@@ -9,9 +9,11 @@ from bufferfolio.activity import MODELS, ActivityModel, for_ionic_strength
 from bufferfolio.buffering import buffer_capacity
 from bufferfolio.composition import Addition, addition, contents, mixed, scaled, water_mass
 from bufferfolio.definitions import Formulation, Interaction, Library, ModelName
-from bufferfolio.equilibrium import Status, solve
+from bufferfolio.equilibrium import Equilibrium, Status, solve
+from bufferfolio.recipes import Recipe, recipe_of
 from bufferfolio.speciation import Forms, Mixture, forms_at
 from bufferfolio.temperature import constants_at
+from bufferfolio.tolerances import Care, care_of
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -24,6 +26,8 @@ class Subject:
     model: ActivityModel
     interactions: tuple[Interaction, ...]  # among the species present
     additions: tuple[Addition, ...]  # one a titrant, at the make-up temperature
+    recipe: Recipe
+    care: Care  # how well it is weighed, measured and read
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -57,6 +61,8 @@ def subject_of(formulation: Formulation, library: Library) -> Subject:
             addition(titrant, library.families, formulation.make_up.temperature)
             for titrant in formulation.titrants
         ),
+        recipe=recipe_of(formulation, library.families),
+        care=care_of(formulation),
     )
 
 
@@ -72,6 +78,13 @@ def reference_temperature(formulation: Formulation) -> float:
     if formulation.expected is not None:
         return formulation.expected.temperature
     return formulation.make_up.temperature
+
+
+def solved_at(subject: Subject, temperature: float, mixture: Mixture | None = None) -> Equilibrium:
+    """Return the equilibrium of a formulation, or of another mixture by its model; S = ()."""
+    there = subject.mixture if mixture is None else mixture
+    constants = constants_at(there.families, np.array(temperature))
+    return solve(there, constants, subject.model, subject.interactions)
 
 
 def state_at(

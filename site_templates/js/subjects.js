@@ -10,6 +10,10 @@
  * @property {Interval} use_temperature K
  * @property {Interval} use_pH
  * @property {{pH: number, temperature: number, tolerance: number} | null} expected
+ * @property {Recipe} recipe
+ * @property {Record<string, any>} care tolerances, and in `stated` those that the file states
+ * @property {{pKw: number, activity: number}} doubts of pKw and of activity models, k = 2
+ * @property {string[]} accepted_dangers
  *
  * @typedef {{temperature: number, pH: number, ionic_strength: number, capacity: number,
  *   status: number, forms: Forms}} SolutionState  one solution at one temperature
@@ -40,7 +44,29 @@
       use_temperature: data.use_temperature,
       use_pH: data.use_pH,
       expected: data.expected,
+      recipe: strengthened(data.recipe, strength),
+      care: data.care,
+      doubts: data.doubts,
+      accepted_dangers: data.accepted_dangers,
     };
+  }
+
+  /** @param {Recipe} recipe @param {number} strength @returns {Recipe} */
+  function strengthened(recipe, strength) {
+    const parts = recipe.parts.map((part) => ({ ...part, amount: part.amount * strength }));
+    return { ...recipe, parts };
+  }
+
+  /** The equilibrium of a formulation, or of another mixture by its model. Mirrors `solved_at`.
+   * @param {Subject} subject
+   * @param {number} temperature K
+   * @param {Mixture} [mixture]
+   * @param {Equilibrium | null} [near] where to begin
+   * @returns {Equilibrium}
+   */
+  function solvedAt(subject, temperature, mixture = subject.mixture, near = null) {
+    const constants = constantsAt(mixture.families, temperature);
+    return solve(mixture, constants, subject.model, subject.interactions, near);
   }
 
   /** The state of a formulation at one temperature. Mirrors `state_at`.
@@ -67,5 +93,5 @@
     };
   }
 
-  bf.subjects = { subjectOf, stateAt };
+  bf.subjects = { subjectOf, solvedAt, stateAt };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

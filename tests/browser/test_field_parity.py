@@ -1,0 +1,144 @@
+"""Band, judgement and correction in the page's engine: the numbers of Python, every formulation."""
+
+from dataclasses import replace
+
+import numpy as np
+import pytest
+from playwright.sync_api import Page
+from recipes import shipped
+
+from bufferfolio import dosing, judging, measurements
+from bufferfolio.dosing import Batch, corrected
+from bufferfolio.engine_data import subject_data
+from bufferfolio.judging import judged
+from bufferfolio.measurements import target_at
+from bufferfolio.recipes import with_amounts
+from bufferfolio.sensitivities import sensitivities
+from bufferfolio.subjects import Subject, solved_at, subject_of
+from bufferfolio.uncertainty import band_of
+
+from .engine_scripts import ask, assert_agrees, load, plain
+
+FORMULATIONS = sorted(shipped().formulations)
+# Both solve to the last bits; a solution that buffers next to nothing loses a few of them.
+LIMIT = 1e-9
+
+
+@pytest.fixture
+def engine(page: Page) -> Page:
+    return load(page)
+
+
+def subject(key: str) -> Subject:
+    return subject_of(shipped().formulations[key], shipped())
+
+
+def temperatures(this: Subject) -> list[float]:
+    use = this.formulation.use_temperature
+    return [use.low, 0.3 * use.low + 0.7 * use.high, use.high]
+
+
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_sensitivities_and_bands(engine: Page, key: str) -> None:
+    this = subject(key)
+    body = """(bf, [data, temperatures]) => {
+      const subject = bf.subjects.subjectOf(data);
+      const { mixture, model, interactions } = subject;
+      return temperatures.map((kelvin) => [
+        bf.sensitivities.sensitivities(
+          mixture, kelvin, model, bf.subjects.solvedAt(subject, kelvin), interactions),
+        bf.uncertainty.bandOf(subject, kelvin),
+        bf.uncertainty.bandOf(subject, kelvin, bf.recipes.withAmounts(subject.recipe,
+          new Map(subject.recipe.parts.map((part, at) => [at, part.amount * (1 + 0.1 * at)]))), 2),
+      ]);
+    }"""
+    found = ask(engine, body, [subject_data(this), temperatures(this)])
+    parts = this.recipe.parts
+    other = with_amounts(
+        this.recipe, {at: part.amount * (1 + 0.1 * at) for at, part in enumerate(parts)}
+    )
+    for kelvin, answer in zip(temperatures(this), found, strict=True):
+        solved = solved_at(this, kelvin)
+        expected = [
+            plain(sensitivities(this.mixture, kelvin, this.model, solved, this.interactions)),
+            plain(band_of(this, kelvin)),
+            plain(band_of(this, kelvin, other, 2.0)),
+        ]
+        assert_agrees(answer, expected, LIMIT, key)
+        assert [item["name"] for item in answer[1]["ranked"]] == [
+            item.name for item in band_of(this, kelvin).ranked
+        ]
+
+
+def readings(this: Subject, kelvin: float) -> list[tuple[float, float, float | None, float | None]]:
+    """Return (temperature, reading, compensation, temperature of the batch) of every kind."""
+    pH, use = band_of(this, kelvin).pH, this.formulation.use_temperature
+    return [
+        (kelvin, pH, None, None),
+        (kelvin, pH + 0.04, None, None),
+        (kelvin, pH - 0.31, 298.15, use.high),
+        (kelvin, pH + 1.7, 283.15, use.low),
+        (kelvin, 14.2, None, None),
+        (kelvin, float("nan"), None, None),
+        (use.high + 1.0, pH, None, None),
+        (kelvin, pH, None, use.low - 3.0),
+    ]
+
+
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_judgements(engine: Page, key: str) -> None:
+    this = subject(key)
+    body = """(bf, [data, readings]) => {
+      const subject = bf.subjects.subjectOf(data);
+      return readings.map(([kelvin, reading, compensation, batch]) =>
+        bf.judging.judged(subject, kelvin, Number(reading), compensation, batch));
+    }"""
+    asked = [each for kelvin in temperatures(this)[1:2] for each in readings(this, kelvin)]
+    found = ask(engine, body, [subject_data(this), plain(asked)])
+    for each, answer in zip(asked, found, strict=True):
+        assert_agrees(answer, plain(judged(this, *each)), LIMIT, f"{key} {each}")
+
+
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_corrections(engine: Page, key: str) -> None:
+    this = subject(key)
+    kelvin = temperatures(this)[1]
+    right, use = target_at(this, kelvin), this.formulation.use_pH
+    batches = [
+        Batch(temperature=kelvin, pH=pH, volume=volume, dilution=dilution)
+        for pH in (
+            right + 0.3 * (use.high - right),
+            right + 0.8 * (use.low - right),
+            right + 0.001,
+            use.high + 0.2,
+            1.0,
+            13.5,
+        )
+        for volume, dilution in ((1e-6, 1.0), (2.0, 1.25))
+    ]
+    titrants = [None, *range(len(this.formulation.titrants))]
+    asked = [(batch, titrant) for batch in batches for titrant in titrants]
+    body = """(bf, [data, asked]) => {
+      const subject = bf.subjects.subjectOf(data);
+      return asked.map(([batch, titrant]) => bf.dosing.corrected(subject, batch, null, titrant));
+    }"""
+    found = ask(engine, body, [subject_data(this), plain(asked)])
+    for (batch, titrant), answer in zip(asked, found, strict=True):
+        expected = plain(corrected(this, batch, titrant=titrant))
+        assert_agrees(answer, expected, LIMIT, f"{key} {batch} {titrant}")
+
+
+def test_words_are_the_same(engine: Page) -> None:
+    body = "(bf) => [bf.measurements.REFUSALS, bf.judging.VERDICTS, bf.dosing.REFUSALS]"
+    expected = [measurements.REFUSALS, judging.VERDICTS, dosing.REFUSALS]
+    assert ask(engine, body, None) == plain(expected)
+
+
+def test_an_ideal_solution_has_a_band_too(engine: Page) -> None:
+    """No shipped formulation is reckoned as ideal: one is made so."""
+    shipped_one = shipped().formulations["plain-water"]
+    this = subject_of(replace(shipped_one, model="ideal"), shipped())
+    body = "(bf, data) => bf.uncertainty.bandOf(bf.subjects.subjectOf(data), 298.15)"
+    expected = plain(band_of(this, 298.15))
+    assert_agrees(ask(engine, body, subject_data(this)), expected, LIMIT, "ideal")
+    assert np.isfinite(expected["half_width"])
