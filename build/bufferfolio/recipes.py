@@ -48,6 +48,11 @@ def part_of(reagent: Reagent, amount: float, families: Mapping[str, Family]) -> 
     )
 
 
+def measure_of(part: Part) -> float:
+    """Return what one mole of a part weighs (kg), or measures (m3) where it is a liquid."""
+    return part.added.mass if part.added.volume is None else part.added.volume
+
+
 def recipe_of(formulation: Formulation, families: Mapping[str, Family]) -> Recipe:
     """Return the recipe that a formulation states."""
     make_up = formulation.make_up

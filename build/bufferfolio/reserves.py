@@ -39,15 +39,15 @@ def reserves_of(
                 Reserve(
                     direction=direction,
                     titrant=positions[0],
-                    right=_to_limit(*there, subject.mixture),
-                    before=_to_limit(*there, now),
-                    after=math.nan if after is None else _to_limit(*there, after),
+                    right=to_limit(*there, subject.mixture),
+                    before=to_limit(*there, now),
+                    after=math.nan if after is None else to_limit(*there, after),
                 )
             )
     return tuple(found)
 
 
-def _to_limit(subject: Subject, temperature: float, titrant: int, mixture: Mixture) -> float:
+def to_limit(subject: Subject, temperature: float, titrant: int, mixture: Mixture) -> float:
     """Return the amount until the limit of use: 0 beyond it, NaN where it is never reached."""
     upward = subject.formulation.titrants[titrant].direction == "upward"
     use = subject.formulation.use_pH
