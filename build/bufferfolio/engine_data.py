@@ -20,7 +20,8 @@ from bufferfolio.definitions import (
 from bufferfolio.explorations import Exploration, exploration_of
 from bufferfolio.recipes import Part, Recipe
 from bufferfolio.sheets import Sheet
-from bufferfolio.subjects import State, Subject, state_at
+from bufferfolio.subjects import State, Subject, reference_temperature, state_at
+from bufferfolio.substitutes import Setting
 from bufferfolio.tolerances import ASSUMED, Care, step_doubt
 
 Data = dict[str, object]
@@ -108,6 +109,16 @@ def subject_data(subject: Subject) -> Data:
         "care": _care_data(subject.care),
         "doubts": {"pKw": ASSUMED["pKw"].value, "activity": ASSUMED["activity"].value},
         "accepted_dangers": list(formulation.accepted_dangers),
+        "reference_temperature": reference_temperature(formulation),
+    }
+
+
+def setting_data(setting: Setting) -> Data:
+    """Return what the page's engine needs beside the formulation to find a fault."""
+    carbonate = setting.carbonate
+    return {
+        "carbonate": None if carbonate is None else family_data(carbonate),
+        "substitutes": [[_part_data(part) for part in parts] for parts in setting.substitutes],
     }
 
 

@@ -208,19 +208,20 @@ def _fit(curve: Curve, evidence: Evidence) -> Fit:
         from_low = evidence.read - np.array(low)
         along = np.array(high) - np.array(low)
         square = float(along @ evidence.inverse @ along)
-        if not square >= FLAT:
+        if math.isnan(square):
             continue
-        nearest = float(along @ evidence.inverse @ from_low) / square
+        flat = square < FLAT
+        nearest = 0.5 if flat else float(along @ evidence.inverse @ from_low) / square
         through = min(max(nearest, 0.0), 1.0)
         least = _chi(np.array(low) + nearest * along, evidence)
         misfit = _chi(np.array(low) + through * along, evidence)
         if misfit < best - SAME:
             best, at = misfit, start + through * (stop - start)
         # Along the piece χ² is least + square (t − nearest)²; its likelihood has a closed mean.
-        root = math.sqrt(0.5 * square)
+        root = 1.0 if flat else math.sqrt(0.5 * square)
         reach = math.erf(root * (1.0 - nearest)) + math.erf(root * nearest)
-        mean = math.exp(-0.5 * least) * math.sqrt(math.pi) / (2.0 * root) * reach
-        likelihood += (stop - start) * mean
+        mean = 1.0 if flat else math.sqrt(math.pi) / (2.0 * root) * reach
+        likelihood += (stop - start) * math.exp(-0.5 * least) * mean
     return Fit(share=at, misfit=best, likelihood=likelihood)
 
 
@@ -262,7 +263,7 @@ def _ranked(suspects: Sequence[Suspect], curves: Sequence[Curve], evidence: Evid
 
 STEPS: Final = 8  # of a range at first
 ROUNDS: Final = 5  # the first, and so many less one of coming closer to the best extent
-FLAT: Final = 1e-12  # of χ² along a piece of a curve
+FLAT: Final = 1e-3  # of a piece of a curve, in χ²: its middle stands for it
 SAME: Final = 1e-9  # of χ²
 PH_RANGE: Final = 14.0
 FITTING: Final = (4.0, 6.18)  # χ² that 95.45 % stay below, for one reading and for two

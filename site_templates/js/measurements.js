@@ -120,6 +120,7 @@
   }
 
   bf.measurements = {
+    ISOPOTENTIAL,
     REFUSALS,
     shown,
     meant,

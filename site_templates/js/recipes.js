@@ -22,6 +22,15 @@
     return recipe.water + brought;
   }
 
+  /** What one mole of a part weighs (kg), or measures (m3) where it is a liquid.
+   * Mirrors `measure_of`.
+   * @param {Part} part
+   * @returns {number}
+   */
+  function measureOf(part) {
+    return part.added.volume === null ? part.added.mass : part.added.volume;
+  }
+
   /** A recipe with other amounts of some parts. Mirrors `with_amounts`.
    * @param {Recipe} recipe
    * @param {Map<number, number>} amounts mol, by position
@@ -95,5 +104,5 @@
     }
   }
 
-  bf.recipes = { recipeWater, withAmounts, listing, mixtureOf, addShares };
+  bf.recipes = { recipeWater, measureOf, withAmounts, listing, mixtureOf, addShares };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -14,6 +14,7 @@
  * @property {Record<string, any>} care tolerances, and in `stated` those that the file states
  * @property {{pKw: number, activity: number}} doubts of pKw and of activity models, k = 2
  * @property {string[]} accepted_dangers
+ * @property {number} reference_temperature K
  *
  * @typedef {{temperature: number, pH: number, ionic_strength: number, capacity: number,
  *   status: number, forms: Forms}} SolutionState  one solution at one temperature
@@ -48,6 +49,7 @@
       care: data.care,
       doubts: data.doubts,
       accepted_dangers: data.accepted_dangers,
+      reference_temperature: data.reference_temperature,
     };
   }
 

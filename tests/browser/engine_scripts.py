@@ -33,6 +33,10 @@ ENGINE: Final = (
     "measurements",
     "judging",
     "dosing",
+    "gases",
+    "air",
+    "suspects",
+    "faults",
 )
 
 SMALLEST: Final = 1e-12

@@ -1,27 +1,32 @@
 """Band, judgement and correction in the page's engine: the numbers of Python, every formulation."""
 
+import math
 from dataclasses import replace
 
 import numpy as np
 import pytest
 from playwright.sync_api import Page
-from recipes import shipped
 
-from bufferfolio import dosing, judging, measurements
+from bufferfolio import dosing, judging, measurements, suspects
 from bufferfolio.dosing import Batch, corrected
-from bufferfolio.engine_data import subject_data
+from bufferfolio.engine_data import setting_data, subject_data
+from bufferfolio.faults import Reading, diagnosed
 from bufferfolio.judging import judged
 from bufferfolio.measurements import target_at
 from bufferfolio.recipes import with_amounts
 from bufferfolio.sensitivities import sensitivities
 from bufferfolio.subjects import Subject, solved_at, subject_of
+from bufferfolio.substitutes import setting_of
 from bufferfolio.uncertainty import band_of
+from recipes import shipped
 
 from .engine_scripts import ask, assert_agrees, load, plain
 
 FORMULATIONS = sorted(shipped().formulations)
 # Both solve to the last bits; a solution that buffers next to nothing loses a few of them.
 LIMIT = 1e-9
+# An extent is fitted; where the curve is flat it is less well determined than the reading.
+FAULTS_LIMIT = 1e-6
 
 
 @pytest.fixture
@@ -106,17 +111,16 @@ def test_corrections(engine: Page, key: str) -> None:
     right, use = target_at(this, kelvin), this.formulation.use_pH
     batches = [
         Batch(temperature=kelvin, pH=pH, volume=volume, dilution=dilution)
-        for pH in (
-            right + 0.3 * (use.high - right),
-            right + 0.8 * (use.low - right),
-            right + 0.001,
-            use.high + 0.2,
-            1.0,
-            13.5,
+        for pH, volume, dilution in (
+            (right + 0.3 * (use.high - right), 2.0, 1.0),
+            (right + 0.8 * (use.low - right), 1e-6, 1.25),
+            (right + 0.001, 1.0, 1.0),
+            (use.high + 0.2, 1.0, 1.0),
+            (1.0, 1.0, 1.0),
+            (13.5, 1.0, 1.0),
         )
-        for volume, dilution in ((1e-6, 1.0), (2.0, 1.25))
     ]
-    titrants = [None, *range(len(this.formulation.titrants))]
+    titrants = [None, len(this.formulation.titrants) - 1]
     asked = [(batch, titrant) for batch in batches for titrant in titrants]
     body = """(bf, [data, asked]) => {
       const subject = bf.subjects.subjectOf(data);
@@ -128,9 +132,46 @@ def test_corrections(engine: Page, key: str) -> None:
         assert_agrees(answer, expected, LIMIT, f"{key} {batch} {titrant}")
 
 
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_faults(engine: Page, key: str) -> None:
+    """One reading that is off a little, one that is off by far, and two of the same batch."""
+    this = subject(key)
+    setting = setting_of(this, shipped())
+    low, kelvin, _ = temperatures(this)
+    right, colder = target_at(this, kelvin), target_at(this, low)
+    asked = [
+        [Reading(temperature=kelvin, pH=right - 0.12)],
+        [Reading(temperature=kelvin, pH=right + 1.6 if right < 12.0 else right - 1.6)],
+        [
+            Reading(temperature=kelvin, pH=right + 0.2),
+            Reading(temperature=low, pH=colder + 0.1, dilution=2.0),
+        ],
+        [Reading(temperature=kelvin, pH=-1.0)],
+    ]
+    body = """(bf, [subject, data, asked]) => {
+      const setting = bf.suspects.settingOf(bf.subjects.subjectOf(subject), data);
+      return asked.map((readings) => bf.faults.diagnosed(setting, readings));
+    }"""
+    found = ask(engine, body, [subject_data(this), setting_data(setting), plain(asked)])
+    for readings, answer in zip(asked, found, strict=True):
+        expected = plain(diagnosed(setting, readings))
+        # Equal weights (none of what is added shows) may come in any order.
+        for each in (answer, expected):
+            each["explanations"].sort(key=lambda one: (one["words"], one["extent"]))
+        assert_agrees(answer, expected, FAULTS_LIMIT, f"{key} {readings}")
+
+
+def test_the_error_function(engine: Page) -> None:
+    values = [0.0, 1e-9, 0.3, 1.0, 2.5, 4.0, 5.9, 6.1, 30.0]
+    values += [-each for each in values]
+    found = ask(engine, "(bf, values) => values.map(bf.faults.erf)", values)
+    np.testing.assert_allclose(found, [math.erf(each) for each in values], rtol=1e-14)
+
+
 def test_words_are_the_same(engine: Page) -> None:
-    body = "(bf) => [bf.measurements.REFUSALS, bf.judging.VERDICTS, bf.dosing.REFUSALS]"
-    expected = [measurements.REFUSALS, judging.VERDICTS, dosing.REFUSALS]
+    body = """(bf) => [bf.measurements.REFUSALS, bf.judging.VERDICTS,
+      bf.dosing.REFUSALS, bf.suspects.KINDS]"""
+    expected = [measurements.REFUSALS, judging.VERDICTS, dosing.REFUSALS, suspects.KINDS]
     assert ask(engine, body, None) == plain(expected)
 
 
