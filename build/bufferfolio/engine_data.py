@@ -10,6 +10,7 @@ from bufferfolio.activity import name_of
 from bufferfolio.composition import Addition, moles
 from bufferfolio.definitions import (
     Family,
+    Formulation,
     Interaction,
     Ion,
     Portion,
@@ -77,7 +78,6 @@ def _step_data(step: Step) -> Data:
 def subject_data(subject: Subject) -> Data:
     """Return a formulation as the page's engine takes it."""
     formulation, mixture = subject.formulation, subject.mixture
-    expected = formulation.expected
     return {
         "families": [family_data(family) for family in mixture.families],
         "totals": mixture.totals.tolist(),
@@ -93,6 +93,19 @@ def subject_data(subject: Subject) -> Data:
             _titrant_data(titrant, added)
             for titrant, added in zip(formulation.titrants, subject.additions, strict=True)
         ],
+        **_limits_data(formulation),
+        "recipe": _recipe_data(subject.recipe),
+        "care": _care_data(subject.care),
+        "doubts": {"pKw": ASSUMED["pKw"].value, "activity": ASSUMED["activity"].value},
+        "accepted_dangers": list(formulation.accepted_dangers),
+        "reference_temperature": reference_temperature(formulation),
+        "make_up_temperature": formulation.make_up.temperature,
+    }
+
+
+def _limits_data(formulation: Formulation) -> Data:
+    expected = formulation.expected
+    return {
         "expected": None
         if expected is None
         else {
@@ -105,11 +118,6 @@ def subject_data(subject: Subject) -> Data:
             "high": formulation.use_temperature.high,
         },
         "use_pH": {"low": formulation.use_pH.low, "high": formulation.use_pH.high},
-        "recipe": _recipe_data(subject.recipe),
-        "care": _care_data(subject.care),
-        "doubts": {"pKw": ASSUMED["pKw"].value, "activity": ASSUMED["activity"].value},
-        "accepted_dangers": list(formulation.accepted_dangers),
-        "reference_temperature": reference_temperature(formulation),
     }
 
 
@@ -118,20 +126,21 @@ def setting_data(setting: Setting) -> Data:
     carbonate = setting.carbonate
     return {
         "carbonate": None if carbonate is None else family_data(carbonate),
-        "substitutes": [[_part_data(part) for part in parts] for parts in setting.substitutes],
+        "substitutes": [[part_data(part) for part in parts] for parts in setting.substitutes],
     }
 
 
 def _recipe_data(recipe: Recipe) -> Data:
     return {
-        "parts": [_part_data(part) for part in recipe.parts],
+        "parts": [part_data(part) for part in recipe.parts],
         "water": recipe.water,
         "counted": recipe.counted,
         "weighed": recipe.weighed,
     }
 
 
-def _part_data(part: Part) -> Data:
+def part_data(part: Part) -> Data:
+    """Return one reagent of a recipe as the page's engine takes it."""
     return {
         "key": part.key,
         "label": part.label,
@@ -139,6 +148,7 @@ def _part_data(part: Part) -> Data:
         "amount": part.amount,
         "doubt": part.doubt,
         "releases": list(part.releases),
+        "nature": part.nature,
     }
 
 

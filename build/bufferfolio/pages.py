@@ -243,6 +243,8 @@ SCRIPTS: Final = (
     "air",
     "suspects",
     "faults",
+    "weighing",
+    "field_checks",
     "sheets",
     "explorations",
     "figure_ticks",

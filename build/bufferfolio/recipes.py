@@ -2,14 +2,18 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from typing import Final, Literal
 
 import numpy as np
 
 from bufferfolio.composition import Addition, addition, moles, water_mass
 from bufferfolio.definitions import Family, Formulation, Ion, Reagent, Titrant
-from bufferfolio.speciation import Mixture
+from bufferfolio.speciation import Mixture, fractions
+from bufferfolio.temperature import pK_at
 from bufferfolio.tolerances import content_doubt
 from bufferfolio.water import FloatArray, density
+
+Nature = Literal["acid", "base", "neutral"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -22,6 +26,7 @@ class Part:
     amount: float  # mol
     doubt: float  # of its content, relative, k = 2
     releases: tuple[str, ...]  # gases, and what sets them free: "chlorine with acid"
+    nature: Nature  # towards neutral water
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,7 +50,24 @@ def part_of(reagent: Reagent, amount: float, families: Mapping[str, Family]) -> 
         amount=amount,
         doubt=content_doubt(reagent),
         releases=reagent.releases,
+        nature=_nature(reagent, families),
     )
+
+
+def _nature(reagent: Reagent, families: Mapping[str, Family]) -> Nature:
+    """Tell acid and base by the charge that a reagent would carry at pH 7 and 25 °C."""
+    pH, kelvin = np.array(7.0), np.array(298.15)
+    charge = sum(ion.charge * share for ion, share in reagent.ions.items())
+    for key, amount in reagent.families.items():
+        family = families[key]
+        pK = np.array([pK_at(step, kelvin) for step in family.steps])
+        forms = fractions(family.charge, pK, pH, np.array(0.0), None)
+        held = zip(family.species, forms, strict=True)
+        charge += amount * sum(form.charge * float(share) for form, share in held)
+    if abs(charge) < NEUTRAL:
+        return "neutral"
+    # What is missing in the balance of charge is H+ or OH-.
+    return "acid" if charge < 0.0 else "base"
 
 
 def measure_of(part: Part) -> float:
@@ -134,3 +156,6 @@ def shares(part: Part, keys: list[str], ions: tuple[Ion, ...]) -> tuple[FloatArr
     for ion, share in zip(part.added.ions, part.added.per_ion, strict=True):
         per_ion[ions.index(ion)] += share
     return per_family, per_ion
+
+
+NEUTRAL: Final = 0.1  # mol of charge per mol, below which a reagent is neither acid nor base

@@ -2,7 +2,7 @@
  * The twin of recipes.py; the recipe of the formulation itself comes with the page's data.
  *
  * @typedef {{key: string, label: string, added: Addition, amount: number, doubt: number,
- *   releases: string[]}} Part  one reagent: mol; doubt of its content relative, k = 2;
+ *   releases: string[], nature: "acid" | "base" | "neutral"}} Part  one reagent: mol; doubt of its content relative, k = 2;
  *   `added.volume` is null where it is weighed
  * @typedef {{parts: Part[], water: number, counted: boolean, weighed: boolean}} Recipe  kg of water
  *   that is measured out, or that the volume counts as; whether the parts' own water comes on top;

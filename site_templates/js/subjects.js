@@ -15,6 +15,7 @@
  * @property {{pKw: number, activity: number}} doubts of pKw and of activity models, k = 2
  * @property {string[]} accepted_dangers
  * @property {number} reference_temperature K
+ * @property {number} make_up_temperature K
  *
  * @typedef {{temperature: number, pH: number, ionic_strength: number, capacity: number,
  *   status: number, forms: Forms}} SolutionState  one solution at one temperature
@@ -50,6 +51,7 @@
       doubts: data.doubts,
       accepted_dangers: data.accepted_dangers,
       reference_temperature: data.reference_temperature,
+      make_up_temperature: data.make_up_temperature,
     };
   }
 

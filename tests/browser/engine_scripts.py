@@ -37,6 +37,8 @@ ENGINE: Final = (
     "air",
     "suspects",
     "faults",
+    "weighing",
+    "field_checks",
 )
 
 SMALLEST: Final = 1e-12

@@ -1,0 +1,79 @@
+"""What a sheet's page needs beside the formulation to judge, correct, make and find faults."""
+
+from collections.abc import Sequence
+from dataclasses import replace
+
+from bufferfolio.definitions import Library
+from bufferfolio.dosing import Batch, corrected
+from bufferfolio.engine_data import Data, part_data, setting_data
+from bufferfolio.faults import Reading, diagnosed
+from bufferfolio.measurements import target_at
+from bufferfolio.recipes import Part
+from bufferfolio.routes import Route, routes_of
+from bufferfolio.shelves import shelf_of
+from bufferfolio.subjects import Subject, reference_temperature
+from bufferfolio.substitutes import Setting, setting_of
+from bufferfolio.uncertainty import band_of
+
+
+def field_data(subject: Subject, library: Library) -> Data:
+    """Return what goes into the page's data block under `field`."""
+    setting = setting_of(subject, library)
+    routes = routes_of(
+        subject, shelf_of(subject, library), reference_temperature(subject.formulation)
+    )
+    return {
+        "setting": setting_data(setting),
+        "routes": routes_data(routes),
+        "checks": field_checks(setting),
+    }
+
+
+def routes_data(routes: Sequence[Route]) -> Data:
+    """Return ways to make a formulation: each reagent once, and the ways by its position."""
+    bottles: dict[str, Part] = {}
+    for route in routes:
+        for part in (*route.recipe.parts, *(each for one in route.instead for each in one)):
+            bottles.setdefault(part.key, replace(part, amount=1.0))
+    positions = {key: at for at, key in enumerate(bottles)}
+    return {
+        "bottles": [part_data(part) for part in bottles.values()],
+        "ways": [
+            {
+                "kind": route.kind,
+                "parts": [[positions[part.key], part.amount] for part in route.recipe.parts],
+                "instead": [[positions[each.key] for each in one] for one in route.instead],
+                "water": route.recipe.water,
+                "differences": [list(pair) for pair in route.differences],
+            }
+            for route in routes
+        ],
+    }
+
+
+def field_checks(setting: Setting) -> Data:
+    """Return what the page's engine must reproduce before it may answer in the field."""
+    subject = setting.subject
+    use = subject.formulation.use_temperature
+    kelvin = reference_temperature(subject.formulation)
+    pH = target_at(subject, kelvin) + READ_OFF
+    correction = corrected(subject, Batch(temperature=kelvin, pH=pH, volume=1.0))
+    best = diagnosed(setting, (Reading(temperature=kelvin, pH=pH),)).explanations[0]
+    return {
+        "bands": [
+            {"temperature": band.temperature, "pH": band.pH, "half_width": band.half_width}
+            for band in (band_of(subject, each) for each in (use.low, kelvin, use.high))
+        ],
+        "correction": {
+            "temperature": kelvin,
+            "pH": pH,
+            "refusal": correction.refusal,
+            "titrant": correction.titrant,
+            "amount": None if correction.refusal else correction.whole.moles,
+            "pH_first": None if correction.refusal else correction.pH_first,
+        },
+        "fault": {"temperature": kelvin, "pH": pH, "weight": best.weight},
+    }
+
+
+READ_OFF = 0.07  # in pH; how far off the reading of the checks is
