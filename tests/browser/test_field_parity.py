@@ -1,23 +1,35 @@
 """Band, judgement and correction in the page's engine: the numbers of Python, every formulation."""
 
 import math
-from dataclasses import replace
+from dataclasses import fields, is_dataclass, replace
 
 import numpy as np
 import pytest
 from playwright.sync_api import Page
 
 from bufferfolio import dosing, judging, measurements, suspects
+from bufferfolio.definitions import Family
 from bufferfolio.dosing import Batch, corrected
 from bufferfolio.engine_data import setting_data, subject_data
 from bufferfolio.faults import Reading, diagnosed
+from bufferfolio.field_data import field_data
 from bufferfolio.judging import judged
 from bufferfolio.measurements import target_at
 from bufferfolio.recipes import with_amounts
+from bufferfolio.routes import routes_of
 from bufferfolio.sensitivities import sensitivities
-from bufferfolio.subjects import Subject, solved_at, subject_of
+from bufferfolio.shelves import shelf_of
+from bufferfolio.subjects import Subject, reference_temperature, solved_at, subject_of
 from bufferfolio.substitutes import setting_of
 from bufferfolio.uncertainty import band_of
+from bufferfolio.weighing import (
+    ACTIONS,
+    adjustment_of,
+    as_weighed,
+    order_of,
+    times,
+    weighings,
+)
 from recipes import shipped
 
 from .engine_scripts import ask, assert_agrees, load, plain
@@ -29,6 +41,9 @@ LIMIT = 1e-9
 FAULTS_LIMIT = 1e-6
 
 
+ROUTE_FIELDS = ("kind", "recipe", "instead", "differences")
+
+
 @pytest.fixture
 def engine(page: Page) -> Page:
     return load(page)
@@ -36,6 +51,15 @@ def engine(page: Page) -> Page:
 
 def subject(key: str) -> Subject:
     return subject_of(shipped().formulations[key], shipped())
+
+
+def keyed(value: object) -> object:
+    """Return a result of Python whose families go by their keys, as the page has them."""
+    if isinstance(value, Family):
+        return value.key
+    if is_dataclass(value):
+        return {field.name: keyed(getattr(value, field.name)) for field in fields(value)}
+    return [keyed(item) for item in value] if isinstance(value, list | tuple) else value
 
 
 def temperatures(this: Subject) -> list[float]:
@@ -183,3 +207,70 @@ def test_an_ideal_solution_has_a_band_too(engine: Page) -> None:
     expected = plain(band_of(this, 298.15))
     assert_agrees(ask(engine, body, subject_data(this)), expected, LIMIT, "ideal")
     assert np.isfinite(expected["half_width"])
+
+
+@pytest.mark.parametrize("key", FORMULATIONS)
+def test_making_and_the_page_s_own_checks(engine: Page, key: str) -> None:
+    """Routes as they travel, rounding, what was really weighed, order, advice; all checks pass."""
+    this = subject(key)
+    kelvin = reference_temperature(this.formulation)
+    data = field_data(this, shipped())
+    body = """(bf, [data, field, kelvin]) => {
+      const subject = bf.subjects.subjectOf(data);
+      const { recipe } = subject;
+      const weighed = new Map(recipe.parts.map((part, at) => [at, 0.01 * (at + 1)]));
+      return {
+        checks: bf.field_checks.runFieldChecks(subject, field),
+        routes: bf.weighing.routesOf(subject, field.routes),
+        bands: bf.weighing.routesOf(subject, field.routes).map((route) =>
+          bf.uncertainty.bandOf(subject, kelvin, route.recipe)),
+        weighings: bf.weighing.weighings(bf.weighing.times(recipe, 3.7), 1e-5, 1e-7),
+        weighed: bf.weighing.asWeighed(recipe, weighed, 2.5),
+        order: bf.weighing.orderOf(recipe),
+        adjustment: bf.weighing.adjustmentOf(subject),
+      };
+    }"""
+    found = ask(engine, body, [subject_data(this), plain(data), kelvin])
+    assert found.pop("checks") == {"count": 5, "failed": 0}
+    routes = routes_of(this, shelf_of(this, shipped()), kelvin)
+    measures = {at: 0.01 * (at + 1) for at in range(len(this.recipe.parts))}
+    expected = plain(
+        {
+            "routes": [
+                {name: keyed(getattr(route, name)) for name in ROUTE_FIELDS} for route in routes
+            ],
+            "bands": [band_of(this, kelvin, route.recipe) for route in routes],
+            "weighings": keyed(weighings(times(this.recipe, 3.7), 1e-5, 1e-7)),
+            "weighed": keyed(as_weighed(this.recipe, measures, 2.5)),
+            "order": order_of(this.recipe),
+            "adjustment": adjustment_of(this),
+        }
+    )
+    assert_agrees(found, expected, LIMIT, key)
+
+
+def test_checks_fail_where_the_engine_does_not_agree(engine: Page) -> None:
+    """Every case, one at a time, is off by more than the engine may be."""
+    this = subject("tris-assay")
+    data = field_data(this, shipped())
+    body = """(bf, [data, field]) => {
+      const subject = bf.subjects.subjectOf(data);
+      const wrong = (change) => {
+        const copy = structuredClone(field);
+        change(copy.checks);
+        return bf.field_checks.runFieldChecks(subject, copy).failed;
+      };
+      return [
+        wrong((checks) => { checks.bands[0].pH += 1e-7; }),
+        wrong((checks) => { checks.bands[2].half_width *= 1 + 1e-6; }),
+        wrong((checks) => { checks.correction.amount *= 1 + 1e-6; }),
+        wrong((checks) => { checks.correction.refusal = "little"; }),
+        wrong((checks) => { checks.fault.weight += 1e-4; }),
+        wrong((checks) => { checks.bands[1].temperature = "warm"; }),
+      ];
+    }"""
+    assert ask(engine, body, [subject_data(this), plain(data)]) == [1] * 6
+
+
+def test_words_of_making_are_the_same(engine: Page) -> None:
+    assert ask(engine, "(bf) => bf.weighing.ACTIONS", None) == plain(ACTIONS)
