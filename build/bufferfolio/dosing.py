@@ -232,7 +232,7 @@ def _refused(refusal: str, titrant: int, target: float) -> Correction:
 
 
 NEUTRAL: Final = 7.0
-MOST_EXCESS: Final = 3.0  # mol/kg of strange acid or base; beyond it the batch is not this one
+MOST_EXCESS: Final = 0.5  # mol/kg of strange acid or base; beyond it the batch is not this one
 NOTHING_TO_DO: Final = 0.005  # in pH: a display of hundredths shows the target
 LEAST_CAPACITY: Final = 5e-5  # mol/kg per pH; a few times what carbon dioxide of the air brings
 MOST_GROWTH: Final = 1.0  # kg of the titrant's water per kg of the batch's

@@ -22,7 +22,7 @@
   const { measured, refusalOf, targetAt } = bf.measurements;
 
   const NEUTRAL = 7;
-  const MOST_EXCESS = 3; // mol/kg of strange acid or base; beyond it the batch is not this one
+  const MOST_EXCESS = 0.5; // mol/kg of strange acid or base; beyond it the batch is not this one
   const NOTHING_TO_DO = 0.005; // in pH: a display of hundredths shows the target
   const LEAST_CAPACITY = 5e-5; // mol/kg per pH; a few times what carbon dioxide of the air brings
   const MOST_GROWTH = 1; // kg of the titrant's water per kg of the batch's
