@@ -173,16 +173,16 @@ def test_gases() -> None:
     """Acid on bleach gives chlorine: told where the file explains it, refused where it does not."""
     bath = subject("sanitising-bath")
     acid = titrant_for(bath, 7.2, 6.94)
-    assert dangers_of(bath, acid, 7.2) == ("chlorine with acid",)
+    assert dangers_of(bath, acid) == ("chlorine with acid",)
     told = corrected(bath, Batch(temperature=288.15, pH=7.2, volume=0.05))
     assert told.refusal == ""
     assert told.dangers == ("chlorine with acid",)
     silent = subject("sanitising-bath", accepted_dangers=())
     refused = corrected(silent, Batch(temperature=288.15, pH=7.2, volume=0.05))
     assert refused.refusal == "dangers"
-    assert dangers_of(bath, titrant_for(bath, 6.8, 6.94), 6.8) == ()
+    assert dangers_of(bath, titrant_for(bath, 6.8, 6.94)) == ()
     ammonia = subject("ammonia-buffer")
-    assert dangers_of(ammonia, titrant_for(ammonia, 9.8, 10.06), 9.8) == ("ammonia with base",)
+    assert dangers_of(ammonia, titrant_for(ammonia, 9.8, 10.06)) == ("ammonia with base",)
 
 
 def test_so_little_is_measured_in_microlitres() -> None:

@@ -56,7 +56,7 @@ def _row(subject: Subject, temperature: float, pH: float, titrant: int, amount: 
     # What may be refused, and where plain repetition does not settle, is asked singly.
     added = subject.additions[titrant]
     refused = not amount > LEAST or amount * added.water > MOST_GROWTH
-    if refused or _unwise(subject, titrant, pH):
+    if refused or _unwise(subject, titrant):
         return _asked(subject, temperature, pH)
     moles = amount * float(density(np.array(temperature)))
     volume = math.nan if added.volume is None else moles * added.volume
@@ -65,10 +65,10 @@ def _row(subject: Subject, temperature: float, pH: float, titrant: int, amount: 
     )
 
 
-def _unwise(subject: Subject, titrant: int, pH: float) -> bool:
+def _unwise(subject: Subject, titrant: int) -> bool:
     """Say whether a correction may be refused for a reason other than its amount."""
     accepted = subject.formulation.accepted_dangers
-    dangers = set(dangers_of(subject, titrant, pH)) - set(accepted)
+    dangers = set(dangers_of(subject, titrant)) - set(accepted)
     return bool(dangers) or float(subject.mixture.totals.sum()) < THIN
 
 

@@ -10,7 +10,7 @@ import numpy as np
 from bufferfolio.buffering import sweep
 from bufferfolio.composition import Addition, mixed, scaled
 from bufferfolio.measurements import Measured, measured, refusal_of, target_at
-from bufferfolio.recipes import Recipe
+from bufferfolio.recipes import Recipe, nature_of
 from bufferfolio.reserves import Reserve, reserves_of
 from bufferfolio.subjects import Subject, solved_at
 from bufferfolio.temperature import constants_at
@@ -81,7 +81,7 @@ def corrected(
     if refusal:
         return _refused(refusal, chosen, aim)
     found = measured(subject, batch.temperature, batch.pH, batch.dilution, batch.recipe)
-    dangers = dangers_of(subject, chosen, batch.pH)
+    dangers = dangers_of(subject, chosen)
     refusal = _refusal(subject, batch, aim, chosen, found, dangers)
     if refusal:
         reserves = reserves_of(subject, batch.temperature, found.mixture)
@@ -137,23 +137,19 @@ def titrant_for(subject: Subject, pH: float, target: float) -> int:
     return -1
 
 
-def dangers_of(subject: Subject, titrant: int, pH: float) -> tuple[str, ...]:
+def dangers_of(subject: Subject, titrant: int) -> tuple[str, ...]:
     """Return the gases that may come off when a titrant meets a batch, with what frees them."""
     if titrant < 0:
         return ()
-    chosen = subject.formulation.titrants[titrant]
-    comes = "acid" if chosen.direction == "downward" else "base"
-    partners = {comes, *chosen.reagent.families}
-    found = [
-        danger
-        for part in subject.recipe.parts
-        for danger in part.releases
-        if _partner(danger) in partners
-    ]
-    meets = {"acid" if pH < NEUTRAL else "base"}
+    reagent = subject.formulation.titrants[titrant].reagent
+    families = {family.key: family for family in subject.mixture.families}
+    comes = {nature_of(reagent, families), *reagent.families}
+    found = []
     for part in subject.recipe.parts:
-        meets |= {family.key for family in part.added.families}
-    found += [danger for danger in chosen.reagent.releases if _partner(danger) in meets]
+        if part.key != reagent.key:
+            meets = {part.nature, *(family.key for family in part.added.families)}
+            found += [danger for danger in part.releases if _partner(danger) in comes]
+            found += [danger for danger in reagent.releases if _partner(danger) in meets]
     return tuple(dict.fromkeys(found))
 
 
@@ -231,7 +227,6 @@ def _refused(refusal: str, titrant: int, target: float) -> Correction:
     )
 
 
-NEUTRAL: Final = 7.0
 MOST_EXCESS: Final = 0.5  # mol/kg of strange acid or base; beyond it the batch is not this one
 NOTHING_TO_DO: Final = 0.005  # in pH: a display of hundredths shows the target
 LEAST_CAPACITY: Final = 5e-5  # mol/kg per pH; a few times what carbon dioxide of the air brings

@@ -4,6 +4,7 @@ Numbers of the definitions are written in full, so that the page reckons with ex
 constants; results in the cases likewise, because they are compared to 1e-9.
 """
 
+from collections.abc import Sequence
 from typing import Final
 
 from bufferfolio.activity import name_of
@@ -19,7 +20,7 @@ from bufferfolio.definitions import (
     Titrant,
 )
 from bufferfolio.explorations import Exploration, exploration_of
-from bufferfolio.recipes import Part, Recipe
+from bufferfolio.recipes import Part, Recipe, nature_of
 from bufferfolio.sheets import Sheet
 from bufferfolio.subjects import State, Subject, reference_temperature, state_at
 from bufferfolio.substitutes import Setting
@@ -90,7 +91,7 @@ def subject_data(subject: Subject) -> Data:
             _portion_data(portion, subject.water) for portion in formulation.make_up.portions
         ],
         "titrants": [
-            _titrant_data(titrant, added)
+            _titrant_data(titrant, added, mixture.families)
             for titrant, added in zip(formulation.titrants, subject.additions, strict=True)
         ],
         **_limits_data(formulation),
@@ -181,12 +182,14 @@ def _interaction_data(pair: Interaction) -> Data:
     return {"cation": pair.cation, "anion": pair.anion, "epsilon": pair.epsilon}
 
 
-def _titrant_data(titrant: Titrant, added: Addition) -> Data:
+def _titrant_data(titrant: Titrant, added: Addition, families: Sequence[Family]) -> Data:
     return {
         "label": titrant.label,
+        "key": titrant.reagent.key,
         "reagent": titrant.reagent.label,
         "direction": titrant.direction,
         "releases": list(titrant.reagent.releases),
+        "nature": nature_of(titrant.reagent, {family.key: family for family in families}),
         **_addition_data(added),
     }
 

@@ -1,18 +1,19 @@
 """What a sheet's page needs beside the formulation to judge, correct, make and find faults."""
 
+import math
 from collections.abc import Sequence
 from dataclasses import replace
 
 from bufferfolio.definitions import Library
-from bufferfolio.dosing import Batch, corrected
+from bufferfolio.dose_tables import dose_rows
 from bufferfolio.engine_data import Data, part_data, setting_data
-from bufferfolio.faults import Reading, diagnosed
 from bufferfolio.measurements import target_at
 from bufferfolio.recipes import Part
 from bufferfolio.routes import Route, routes_of
 from bufferfolio.shelves import shelf_of
 from bufferfolio.subjects import Subject, reference_temperature
 from bufferfolio.substitutes import Setting, setting_of
+from bufferfolio.suspects import scene_of
 from bufferfolio.uncertainty import band_of
 
 
@@ -56,23 +57,22 @@ def field_checks(setting: Setting) -> Data:
     subject = setting.subject
     use = subject.formulation.use_temperature
     kelvin = reference_temperature(subject.formulation)
-    pH = target_at(subject, kelvin) + READ_OFF
-    correction = corrected(subject, Batch(temperature=kelvin, pH=pH, volume=1.0))
-    best = diagnosed(setting, (Reading(temperature=kelvin, pH=pH),)).explanations[0]
+    read = target_at(subject, kelvin) + READ_OFF
+    (dose,) = dose_rows(subject, kelvin, [read])
+    in_air = scene_of(setting, kelvin).in_air
     return {
         "bands": [
             {"temperature": band.temperature, "pH": band.pH, "half_width": band.half_width}
             for band in (band_of(subject, each) for each in (use.low, kelvin, use.high))
         ],
-        "correction": {
+        "dose": {
             "temperature": kelvin,
-            "pH": pH,
-            "refusal": correction.refusal,
-            "titrant": correction.titrant,
-            "amount": None if correction.refusal else correction.whole.moles,
-            "pH_first": None if correction.refusal else correction.pH_first,
+            "pH": read,
+            "refusal": dose.refusal,
+            "titrant": dose.titrant,
+            "moles": None if dose.refusal else dose.moles,
         },
-        "fault": {"temperature": kelvin, "pH": pH, "weight": best.weight},
+        "air": {"temperature": kelvin, "total": None if math.isnan(in_air) else in_air},
     }
 
 

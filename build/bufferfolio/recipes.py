@@ -50,12 +50,12 @@ def part_of(reagent: Reagent, amount: float, families: Mapping[str, Family]) -> 
         amount=amount,
         doubt=content_doubt(reagent),
         releases=reagent.releases,
-        nature=_nature(reagent, families),
+        nature=nature_of(reagent, families),
     )
 
 
-def _nature(reagent: Reagent, families: Mapping[str, Family]) -> Nature:
-    """Tell acid and base by the charge that a reagent would carry at pH 7 and 25 °C."""
+def nature_of(reagent: Reagent, families: Mapping[str, Family]) -> Nature:
+    """Return what a reagent is to water, by the charge it would carry at pH 7 and 25 °C."""
     pH, kelvin = np.array(7.0), np.array(298.15)
     charge = sum(ion.charge * share for ion, share in reagent.ions.items())
     for key, amount in reagent.families.items():

@@ -3,7 +3,8 @@
  *
  * @typedef {{label: string, reagent: string, direction: "upward" | "downward",
  *   families: string[], per_family: number[], ions: Ion[], per_ion: number[], water: number,
- *   volume: number | null, mass: number, releases: string[]}} Addition  what one mole of a titrant's solute carries
+ *   volume: number | null, mass: number, key: string, nature: string,
+ *   releases: string[]}} Addition  what one mole of a titrant's solute carries
  *   along: keys of families, mol; water kg; volume m3, null for a solid; mass kg
  */
 (function (bf) {

@@ -21,7 +21,6 @@
   const { reservesOf } = bf.reserves;
   const { measured, refusalOf, targetAt } = bf.measurements;
 
-  const NEUTRAL = 7;
   const MOST_EXCESS = 0.5; // mol/kg of strange acid or base; beyond it the batch is not this one
   const NOTHING_TO_DO = 0.005; // in pH: a display of hundredths shows the target
   const LEAST_CAPACITY = 5e-5; // mol/kg per pH; a few times what carbon dioxide of the air brings
@@ -72,7 +71,7 @@
     let refusal = refusalOf(subject, temperature, pH);
     if (refusal) return refused(refusal, chosen, aim);
     const found = measured(subject, temperature, pH, batch.dilution, batch.recipe);
-    const dangers = dangersOf(subject, chosen, pH);
+    const dangers = dangersOf(subject, chosen);
     refusal = refusalFor(subject, batch, aim, chosen, found, dangers);
     if (refusal) {
       const reserves = reservesOf(subject, temperature, found.mixture);
@@ -134,19 +133,19 @@
    * Mirrors `dangers_of`.
    * @param {Subject} subject
    * @param {number} titrant
-   * @param {number} pH
    * @returns {string[]}
    */
-  function dangersOf(subject, titrant, pH) {
+  function dangersOf(subject, titrant) {
     if (titrant < 0) return [];
     const chosen = subject.additions[titrant];
-    const { parts } = subject.recipe;
-    const partners = [chosen.direction === "downward" ? "acid" : "base", ...chosen.families];
-    const meets = [pH < NEUTRAL ? "acid" : "base", ...parts.flatMap((part) => part.added.families)];
-    const found = [
-      ...parts.flatMap((part) => part.releases.filter((gas) => partners.includes(partnerOf(gas)))),
-      ...chosen.releases.filter((gas) => meets.includes(partnerOf(gas))),
-    ];
+    const comes = [chosen.nature, ...chosen.families];
+    const found = [];
+    for (const part of subject.recipe.parts) {
+      if (part.key === chosen.key) continue;
+      const meets = [part.nature, ...part.added.families];
+      found.push(...part.releases.filter((danger) => comes.includes(partnerOf(danger))));
+      found.push(...chosen.releases.filter((danger) => meets.includes(partnerOf(danger))));
+    }
     return [...new Set(found)];
   }
 

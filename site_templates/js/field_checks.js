@@ -5,7 +5,6 @@
   "use strict";
 
   const SAME = 1e-9; // in pH, and relative in everything else
-  const SAME_WEIGHT = 1e-6; // of an explanation, whose extent is fitted
 
   /** Work out every case again.
    * @param {Subject} subject
@@ -13,11 +12,11 @@
    * @returns {{count: number, failed: number}}
    */
   function runFieldChecks(subject, field) {
-    const { bands, correction, fault } = field.checks;
+    const { bands, dose, air } = field.checks;
     const cases = [
       ...bands.map((/** @type {any} */ band) => () => bandAgrees(subject, band)),
-      () => correctionAgrees(subject, correction),
-      () => faultAgrees(subject, field.setting, fault),
+      () => doseAgrees(subject, dose),
+      () => airAgrees(subject, field.setting, air),
     ];
     return { count: cases.length, failed: cases.filter((agrees) => !passes(agrees)).length };
   }
@@ -31,9 +30,9 @@
     }
   }
 
-  /** @param {number} found @param {number} expected @param {number} [limit] @returns {boolean} */
-  function near(found, expected, limit = SAME) {
-    return Math.abs(found - expected) <= limit * Math.max(1, Math.abs(expected));
+  /** @param {number} found @param {number} expected @returns {boolean} */
+  function near(found, expected) {
+    return Math.abs(found - expected) <= SAME * Math.max(1, Math.abs(expected));
   }
 
   /** @param {Subject} subject @param {any} expected @returns {boolean} */
@@ -43,21 +42,19 @@
   }
 
   /** @param {Subject} subject @param {any} expected @returns {boolean} */
-  function correctionAgrees(subject, expected) {
+  function doseAgrees(subject, expected) {
     const { temperature, pH } = expected;
     const batch = { temperature, pH, volume: 1, dilution: 1, recipe: null };
     const found = bf.dosing.corrected(subject, batch);
     if (found.refusal !== expected.refusal || found.titrant !== expected.titrant) return false;
-    if (expected.refusal) return true;
-    return near(found.whole.moles, expected.amount) && near(found.pH_first, expected.pH_first);
+    return expected.refusal !== "" || near(found.whole.moles / expected.moles, 1);
   }
 
   /** @param {Subject} subject @param {any} data @param {any} expected @returns {boolean} */
-  function faultAgrees(subject, data, expected) {
-    const { temperature, pH } = expected;
+  function airAgrees(subject, data, expected) {
     const setting = bf.suspects.settingOf(subject, data);
-    const { explanations } = bf.faults.diagnosed(setting, [{ temperature, pH, dilution: 1 }]);
-    return near(explanations[0].weight, expected.weight, SAME_WEIGHT);
+    const found = bf.suspects.sceneOf(setting, expected.temperature).in_air;
+    return expected.total === null ? Number.isNaN(found) : near(found / expected.total, 1);
   }
 
   bf.field_checks = { runFieldChecks };

@@ -83,24 +83,26 @@ def plain(value: object) -> object:
     return value
 
 
-def assert_agrees(found: object, expected: object, limit: float, about: str) -> None:
+def assert_agrees(
+    found: object, expected: object, limit: float, about: str, smallest: float = SMALLEST
+) -> None:
     """Hold an answer of the page against Python's: the same but for `limit` of any number.
 
-    Differences of nearly equal numbers are as good as those, hence `SMALLEST`. What the page has
+    Differences of nearly equal numbers are as good as those, hence `smallest`. What the page has
     beyond Python's fields is its own affair.
     """
     if isinstance(expected, dict):
         assert isinstance(found, dict), about
         for key, value in expected.items():
             assert key in found, f"{about}: {key} is missing"
-            assert_agrees(found[key], value, limit, f"{about}.{key}")
+            assert_agrees(found[key], value, limit, f"{about}.{key}", smallest)
     elif isinstance(expected, list):
         assert isinstance(found, list), about
         assert len(found) == len(expected), about
         for at, (one, other) in enumerate(zip(found, expected, strict=True)):
-            assert_agrees(one, other, limit, f"{about}[{at}]")
+            assert_agrees(one, other, limit, f"{about}[{at}]", smallest)
     elif isinstance(expected, float) and not isinstance(found, str):
-        near = abs(found - expected) <= max(limit * abs(expected), SMALLEST)
+        near = abs(found - expected) <= max(limit * abs(expected), smallest)
         assert near, f"{about}: {found} is not {expected}"
     else:
         assert found == expected, about
