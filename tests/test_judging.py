@@ -4,7 +4,6 @@ from dataclasses import replace
 
 import pytest
 
-from bufferfolio.definitions import Expectation
 from bufferfolio.judging import VERDICT_OF, VERDICTS, judged
 from bufferfolio.measurements import (
     REFUSALS,
@@ -64,7 +63,7 @@ def test_the_target_is_what_the_chemist_stated_carried_by_the_drift() -> None:
 )
 def test_verdicts(off: float, tolerance: float, verdict: str) -> None:
     """The band of this formulation is 0.040 wide at 25 °C; its target lies 0.004 above."""
-    expected = Expectation(pH=8.16, temperature=ROOM, tolerance=tolerance)
+    expected = replace(TRIS.formulation.expected, tolerance=tolerance)
     this = subject("tris-assay", expected=expected)
     found = judged(this, ROOM, 8.16 + off)
     assert found.verdict == verdict

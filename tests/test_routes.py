@@ -181,3 +181,12 @@ def test_advice_from_the_drift() -> None:
     assert tris.matters
     phosphate = adjustment_of(subject("fixative-buffer"))
     assert not phosphate.matters
+
+
+def test_a_liquid_that_is_stated_as_a_mass_is_weighed() -> None:
+    acid = shipped().reagents["hydrochloric-acid-37"]
+    poured = part_of(acid, 1.0, shipped().families)
+    weighed = part_of(acid, 1.0, shipped().families, weighed=True)
+    assert poured.added.volume == pytest.approx(0.03646 / 0.37 / 1184.0, rel=1e-3)
+    assert weighed.added.volume is None
+    assert weighed.added.water == poured.added.water

@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 
 from bufferfolio import temperature, water
-from bufferfolio.activity import MODELS
+from bufferfolio.activity import MODELS, name_of
 from bufferfolio.definitions import Interaction
 from bufferfolio.equilibrium import Equilibrium, solve
 from bufferfolio.sensitivities import Sensitivities, sensitivities
@@ -119,7 +119,7 @@ class Case:
 def test_every_shipped_formulation(key: str) -> None:
     subject = subject_of(shipped().formulations[key], shipped())
     use = subject.formulation.use_temperature
-    model = subject.formulation.model
+    model = name_of(subject.model)
     Case(subject.mixture, 0.6 * use.low + 0.4 * use.high, model, subject.interactions).check()
 
 

@@ -10,9 +10,10 @@ import numpy as np
 from bufferfolio.balance import prepare, sums, with_offsets
 from bufferfolio.buffering import sweep
 from bufferfolio.composition import Addition, mixed, scaled
-from bufferfolio.dosing import MOST_GROWTH, NOTHING_TO_DO, Batch, corrected, dangers_of, titrant_for
+from bufferfolio.dosing import NOTHING_TO_DO, Batch, corrected, dangers_of, titrant_for
 from bufferfolio.equilibrium import Equilibrium, solve
 from bufferfolio.measurements import STRONG_ACID, STRONG_BASE, target_at
+from bufferfolio.reserves import MOST_GROWTH
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import Subject
 from bufferfolio.temperature import LN10, Constants, constants_at

@@ -11,7 +11,7 @@ from bufferfolio.buffering import sweep
 from bufferfolio.composition import Addition, mixed, scaled
 from bufferfolio.measurements import Measured, measured, refusal_of, target_at
 from bufferfolio.recipes import Recipe, nature_of
-from bufferfolio.reserves import Reserve, reserves_of
+from bufferfolio.reserves import MOST_GROWTH, Reserve, reserves_of
 from bufferfolio.subjects import Subject, solved_at
 from bufferfolio.temperature import constants_at
 from bufferfolio.titration import amount_to_reach
@@ -230,7 +230,6 @@ def _refused(refusal: str, titrant: int, target: float) -> Correction:
 MOST_EXCESS: Final = 0.5  # mol/kg of strange acid or base; beyond it the batch is not this one
 NOTHING_TO_DO: Final = 0.005  # in pH: a display of hundredths shows the target
 LEAST_CAPACITY: Final = 5e-5  # mol/kg per pH; a few times what carbon dioxide of the air brings
-MOST_GROWTH: Final = 1.0  # kg of the titrant's water per kg of the batch's
 LEAST_VOLUME: Final = 1e-9  # m3, a microlitre
 LEAST_MASS: Final = 1e-6  # kg, a milligram
 

@@ -39,14 +39,17 @@ class Recipe:
     weighed: bool  # whether the water is weighed; otherwise it is measured by volume
 
 
-def part_of(reagent: Reagent, amount: float, families: Mapping[str, Family]) -> Part:
-    """Return an amount (mol) of a reagent as it stands on the shelf."""
+def part_of(
+    reagent: Reagent, amount: float, families: Mapping[str, Family], *, weighed: bool = False
+) -> Part:
+    """Return an amount (mol) of a reagent as it stands on the shelf; liquids may be weighed."""
     undiluted = Titrant(reagent=reagent, direction="upward", molarity=None, label=reagent.label)
+    # Of what it brings, only the volume depends on a temperature, and only if diluted.
+    added = addition(undiluted, families, 293.15)
     return Part(
         key=reagent.key,
         label=reagent.label,
-        # Of what it brings, only the volume depends on a temperature, and only if diluted.
-        added=addition(undiluted, families, 293.15),
+        added=replace(added, volume=None) if weighed else added,
         amount=amount,
         doubt=content_doubt(reagent),
         releases=reagent.releases,
@@ -85,7 +88,7 @@ def recipe_of(formulation: Formulation, families: Mapping[str, Family]) -> Recip
         measured = float(density(np.array(make_up.temperature))) * (make_up.volume or 0.0)
     return Recipe(
         parts=tuple(
-            part_of(portion.reagent, moles(portion, water), families)
+            part_of(portion.reagent, moles(portion, water), families, weighed=portion.weighed)
             for portion in make_up.portions
         ),
         water=measured,

@@ -48,20 +48,19 @@ def reserves_of(
 
 
 def to_limit(subject: Subject, temperature: float, titrant: int, mixture: Mixture) -> float:
-    """Return the amount until the limit of use: 0 beyond it, NaN where it is never reached."""
+    """Return the amount until the limit of use: 0 beyond it, NaN if the batch doubles before."""
     upward = subject.formulation.titrants[titrant].direction == "upward"
     use = subject.formulation.use_pH
     pH = float(solved_at(subject, temperature, mixture).pH)
     if (pH >= use.high) if upward else (pH <= use.low):
         return 0.0
-    return amount_to_reach(
-        mixture,
-        subject.additions[titrant],
-        use.high if upward else use.low,
-        temperature,
-        subject.model,
-        subject.interactions,
+    added = subject.additions[titrant]
+    limit = use.high if upward else use.low
+    reached = amount_to_reach(
+        mixture, added, limit, temperature, subject.model, subject.interactions
     )
+    return reached if reached * added.water <= MOST_GROWTH else math.nan
 
 
+MOST_GROWTH: Final = 1.0  # kg of the titrant's water per kg of the batch's
 DIRECTIONS: Final[tuple[Direction, Direction]] = ("downward", "upward")

@@ -61,5 +61,6 @@ def _brings(reagent: Reagent) -> tuple[object, object]:
 
 def _in_place_of(part: Part, reagent: Reagent, library: Library) -> Part:
     """Return the same mass of another solid, or the same volume of another liquid."""
-    other = part_of(reagent, 1.0, library.families)
+    weighed = part.added.volume is None
+    other = part_of(reagent, 1.0, library.families, weighed=weighed)
     return replace(other, amount=part.amount * measure_of(part) / measure_of(other))

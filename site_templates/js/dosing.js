@@ -18,13 +18,12 @@
   const { sweep } = bf.buffering;
   const { amountToReach } = bf.titration;
   const { solvedAt } = bf.subjects;
-  const { reservesOf } = bf.reserves;
+  const { MOST_GROWTH, reservesOf } = bf.reserves;
   const { measured, refusalOf, targetAt } = bf.measurements;
 
   const MOST_EXCESS = 0.5; // mol/kg of strange acid or base; beyond it the batch is not this one
   const NOTHING_TO_DO = 0.005; // in pH: a display of hundredths shows the target
   const LEAST_CAPACITY = 5e-5; // mol/kg per pH; a few times what carbon dioxide of the air brings
-  const MOST_GROWTH = 1; // kg of the titrant's water per kg of the batch's
   const LEAST_VOLUME = 1e-9; // m3, a microlitre
   const LEAST_MASS = 1e-6; // kg, a milligram
 

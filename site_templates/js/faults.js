@@ -6,13 +6,13 @@
  * explain everything is not preferred to one who explains this. Before the reading all are equally
  * likely.
  *
- * @typedef {{temperature: number, pH: number, dilution: number}} Reading  K; dilution: volume of the
- *   diluted sample over volume of the batch in it
+ * @typedef {{temperature: number, pH: number, dilution: number}} Reading  K; dilution: volume of
+ *   the diluted sample over volume of the batch in it
  * @typedef {{suspect: Suspect, words: string, extent: number, predicted: number[], misfit: number,
  *   fits: boolean, weight: number}} Explanation  as in faults.py
  * @typedef {{refusal: string, nothing_wrong: boolean, none_fits: boolean,
  *   explanations: Explanation[], unexplained: number}} Diagnosis
- * @typedef {{share: number, seen: number[]}[]} Curve  where readings go along a suspect's extents
+ * @typedef {{share: number, seen: number[]}[]} ReadingCurve  where readings go along extents
  * @typedef {{read: number[], inverse: number[][], chance: number}} Evidence
  * @typedef {{share: number, misfit: number, likelihood: number}} Fit
  */
@@ -55,8 +55,8 @@
     const suspects = suspectsOf(setting, readings[0].temperature);
     const evidence = evidenceOf(setting.subject, readings);
     const look = lookerOf(scene, readings);
-    const curves = suspects.map((each) => {
-      /** @type {Curve} */
+    const curves = suspects.map((/** @type {Suspect} */ each) => {
+      /** @type {ReadingCurve} */
       const curve = sharesOf(each).map((share) => look(each, share));
       for (let round = 1; round < ROUNDS && each.low !== each.high; round += 1) {
         curve.push(look(each, fitOf(curve, evidence).share));
@@ -77,7 +77,9 @@
       bandOf(subject, temperature, null, dilution),
     );
     const covariance = readings.map(() => readings.map(() => 0));
-    bands[0].contributions.forEach(({ kind }, c) => {
+    const [{ contributions }] = bands;
+    for (let c = 0; c < contributions.length; c += 1) {
+      const { kind } = contributions[c];
       const effect = bands.map((band) => band.contributions[c].effect / 2);
       // Meter and thermometer err anew with each reading; the rest errs the same way in all.
       const apart = kind === "meter" || kind === "temperature";
@@ -86,7 +88,7 @@
           if (k === j || !apart) covariance[k][j] += effect[k] * effect[j];
         }
       }
-    });
+    }
     const { determinant, inverse } = inverted(covariance);
     const spread = Math.sqrt(2 * Math.PI) ** bands.length * Math.sqrt(determinant);
     return {
@@ -145,7 +147,7 @@
   }
 
   /** Fit the extent, readings being straight between the points of a curve. Mirrors `_fit`.
-   * @param {Curve} curve
+   * @param {ReadingCurve} curve
    * @param {Evidence} evidence
    * @returns {Fit}
    */
@@ -216,7 +218,7 @@
   /** Weigh the suspects; each is shown at the point of its curve that fits best.
    * Mirrors `_ranked`.
    * @param {Suspect[]} suspects
-   * @param {Curve[]} curves
+   * @param {ReadingCurve[]} curves
    * @param {Evidence} evidence
    * @returns {Diagnosis}
    */

@@ -2,8 +2,8 @@
  * The twin of recipes.py; the recipe of the formulation itself comes with the page's data.
  *
  * @typedef {{key: string, label: string, added: Addition, amount: number, doubt: number,
- *   releases: string[], nature: "acid" | "base" | "neutral"}} Part  one reagent: mol; doubt of its content relative, k = 2;
- *   `added.volume` is null where it is weighed
+ *   releases: string[], nature: "acid" | "base" | "neutral"}} Part  one reagent: mol; doubt of its
+ *   content relative, k = 2; `added.volume` is null where it is weighed
  * @typedef {{parts: Part[], water: number, counted: boolean, weighed: boolean}} Recipe  kg of water
  *   that is measured out, or that the volume counts as; whether the parts' own water comes on top;
  *   whether the water is weighed
@@ -94,8 +94,9 @@
   function addShares(part, moles, families, ions, totals, molalities) {
     const { added } = part;
     for (let k = 0; k < added.families.length; k += 1) {
-      const row = families.findIndex((family) => family.key === added.families[k]);
-      if (row < 0) throw new RangeError(`the mixture does not list the family ${added.families[k]}`);
+      const key = added.families[k];
+      const row = families.findIndex((family) => family.key === key);
+      if (row < 0) throw new RangeError(`the mixture does not list the family ${key}`);
       totals[row] += moles * added.per_family[k];
     }
     for (let k = 0; k < added.ions.length; k += 1) {

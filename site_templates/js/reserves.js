@@ -9,6 +9,7 @@
   const { amountToReach } = bf.titration;
   const { solvedAt } = bf.subjects;
 
+  const MOST_GROWTH = 1; // kg of the titrant's water per kg of the batch's
   const DIRECTIONS = ["downward", "upward"];
 
   /** The reserve on both sides: made rightly, as a batch is now, and after a correction.
@@ -35,7 +36,7 @@
     return found;
   }
 
-  /** The amount until the limit of use: 0 beyond it, NaN where it is never reached.
+  /** The amount until the limit of use: 0 beyond it, NaN: not before the batch has doubled.
    * Mirrors `_to_limit`.
    * @param {Subject} subject
    * @param {number} temperature K
@@ -50,8 +51,9 @@
     const { pH } = solvedAt(subject, temperature, mixture);
     if (upward ? pH >= use.high : pH <= use.low) return 0;
     const limit = upward ? use.high : use.low;
-    return amountToReach(mixture, added, limit, temperature, model, interactions);
+    const reached = amountToReach(mixture, added, limit, temperature, model, interactions);
+    return reached * added.water <= MOST_GROWTH ? reached : NaN;
   }
 
-  bf.reserves = { reservesOf, toLimit };
+  bf.reserves = { MOST_GROWTH, reservesOf, toLimit };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

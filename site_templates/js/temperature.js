@@ -6,9 +6,12 @@
  *   heat_capacity: number | null}} ReferenceConstants  K, J/mol, J/(mol K)
  * @typedef {{kind: "equation", name: string, constant: number, inverse: number, linear: number,
  *   logarithm: number, inverse_square: number}} PublishedEquation
- * @typedef {{law: ReferenceConstants | PublishedEquation, valid_temperature: Interval}} Step
+ * @typedef {{pK: number, enthalpy: number, stated: boolean}} Doubt  k = 2; J/mol
+ * @typedef {{law: ReferenceConstants | PublishedEquation, valid_temperature: Interval,
+ *   doubt: Doubt}} Step
  * @typedef {{name: string, label: string, charge: number}} Species
- * @typedef {{key: string, charge: number, species: Species[], steps: Step[]}} Family
+ * @typedef {{key: string, label: string, charge: number, species: Species[],
+ *   steps: Step[]}} Family
  * @typedef {{pK: number[][], pKw: number, debye_huckel: number, in_range: boolean}} Constants
  * @typedef {{pK: number[][], pKw: number, debye_huckel: number}} ConstantSlopes  each by K
  */
