@@ -22,7 +22,7 @@ from bufferfolio.temperature import LN10
 from bufferfolio.water import FloatArray
 
 FEWEST: Final = 6  # points that are smoothed: three numbers, and some to spare
-REACH: Final = 0.6  # of the way from the end point to the flattest part, in pH, that is smoothed
+REACH: Final = 0.4  # of the way from the end point to the flattest part, in pH, that is smoothed
 CONTRAST: Final = 2.0  # how much steeper than both sides an end point has to be
 CERTAIN: Final = 5.0  # standard errors by which it has to be so: thousands of places are compared
 STEEP: Final = 0.1  # of a peak's slope: where the curve may be steep again
@@ -179,10 +179,15 @@ def _flattest(slopes: FloatArray, errors: FloatArray, at: int, side: range) -> i
 
 
 def _refined(curve: _Curve, middles: FloatArray, peak: _Peak) -> EndPoint | None:
-    """Return the end point of a steep part, the window following it."""
-    places = middles[[peak.low, peak.at, peak.high]]
-    low, pH, high = (float(each) for each in np.interp(places, curve.volume, curve.pH))
-    about, found = float(places[1]), None
+    """Return the end point of a steep part, the window following it.
+
+    It begins half-way, in pH, between the flat parts: where slopes are largest may lie all of a
+    window's points on one side of the jump.
+    """
+    places = middles[[peak.low, peak.high]]
+    low, high = (float(each) for each in np.interp(places, curve.volume, curve.pH))
+    pH = 0.5 * (low + high)
+    about, found = _crossing(curve, float(places[0]), float(places[1]), pH), None
     for _ in range(ROUNDS):
         ends = pH + REACH * (low - pH), pH + REACH * (high - pH)
         following = _through(curve, _window(curve, about, *ends), pH)
@@ -195,11 +200,24 @@ def _refined(curve: _Curve, middles: FloatArray, peak: _Peak) -> EndPoint | None
     return found
 
 
+def _crossing(curve: _Curve, start: float, stop: float, pH: float) -> float:
+    """Return the volume between two at which the readings first pass one."""
+    inside = (curve.volume >= start) & (curve.volume <= stop)
+    volume, readings = curve.volume[inside], curve.pH[inside]
+    after = int(np.argmax(readings > pH))
+    if after == 0:
+        return 0.5 * (start + stop)
+    share = (pH - readings[after - 1]) / (readings[after] - readings[after - 1])
+    return float(volume[after - 1] + share * (volume[after] - volume[after - 1]))
+
+
 def _window(curve: _Curve, about: float, low: float, high: float) -> NDArray[np.intp]:
-    """Return the points between two readings about a volume, at least the nearest few."""
+    """Return the points between two readings about a volume, at least a few."""
     inside = (curve.pH > low) & (curve.pH < high)
-    nearest = np.argsort(np.abs(curve.volume - about), kind="stable")[:FEWEST]
-    start, stop = int(nearest.min()), int(nearest.max())
+    after = int(np.searchsorted(curve.volume, about))
+    # As many on either side: a smoothing of one side says nothing of the other.
+    start = min(max(after - FEWEST // 2, 0), curve.volume.size - FEWEST)
+    stop = start + FEWEST - 1
     while start > 0 and inside[start - 1]:
         start -= 1
     while stop < curve.volume.size - 1 and inside[stop + 1]:
@@ -213,7 +231,7 @@ def _through(curve: _Curve, window: NDArray[np.intp], about: float) -> EndPoint 
     up, down = 10.0 ** (pH - about), 10.0 ** (about - pH)
     columns = np.array([np.ones_like(pH), up, -down])
     noise = max(curve.noise, LEAST_NOISE)
-    weights = 1.0 / (up + down)
+    weights = np.ones_like(pH)
     for _ in range(ROUNDS):
         scaled = columns * weights
         inverse = np.linalg.inv(scaled @ scaled.T)

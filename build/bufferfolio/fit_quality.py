@@ -77,18 +77,24 @@ def verdict(
         return Verdict(kind="no solution", about=())
     if hidden.any():
         return Verdict(kind="not separable", about=tuple(keys[hidden].tolist()))
-    if at_bound.any():
-        return Verdict(kind="at a bound", about=tuple(keys[at_bound].tolist()))
-    if chi_squared > MISFIT:
-        return Verdict(kind="does not fit", about=())
     poor = errors > np.array([USEFUL[each.kind] for each in free])
-    if not poor.any():
-        return Verdict(kind="well determined", about=())
-    ties = np.abs(correlation - np.eye(len(free))) * poor
-    first, second = sorted(int(at) for at in np.unravel_index(np.argmax(ties), ties.shape))
-    if ties[second, first] > TIED or ties[first, second] > TIED:
-        return Verdict(kind="not separable", about=(str(keys[first]), str(keys[second])))
-    return Verdict(kind="poorly determined", about=tuple(keys[poor].tolist()))
+    tied = _tied(correlation, poor)
+    if at_bound.any() and not at_bound[tied].any():
+        return Verdict(kind="at a bound", about=tuple(keys[at_bound].tolist()))
+    if chi_squared > MISFIT and not at_bound.any():
+        return Verdict(kind="does not fit", about=())
+    if tied:
+        return Verdict(kind="not separable", about=tuple(keys[tied].tolist()))
+    if poor.any():
+        return Verdict(kind="poorly determined", about=tuple(keys[poor].tolist()))
+    return Verdict(kind="well determined", about=())
+
+
+def _tied(correlation: FloatArray, poor: NDArray[np.bool_]) -> list[int]:
+    """Return the two quantities, one of them poor, that are nearly one; none where none are."""
+    ties = np.abs(correlation - np.eye(len(poor))) * poor
+    first, second = (int(at) for at in np.unravel_index(np.argmax(ties), ties.shape))
+    return sorted([first, second]) if ties[first, second] > TIED else []
 
 
 # Standard errors up to which a result is of use: shares of strength and total, else pH.

@@ -22,7 +22,7 @@
   const { inverse } = bf.linear;
 
   const FEWEST = 6; // points that are smoothed: three numbers, and some to spare
-  const REACH = 0.6; // of the way from the end point to the flattest part, in pH, that is smoothed
+  const REACH = 0.4; // of the way from the end point to the flattest part, in pH, that is smoothed
   const CONTRAST = 2; // how much steeper than both sides an end point has to be
   const CERTAIN = 5; // standard errors by which it has to be so: thousands of places are compared
   const STEEP = 0.1; // of a peak's slope: where the curve may be steep again
@@ -170,12 +170,16 @@
   }
 
   /** The end point of a steep part, the window following it. Mirrors `_refined`.
+   *
+   * It begins half-way, in pH, between the flat parts: where slopes are largest may lie all of a
+   * window's points on one side of the jump.
    * @param {Turned} curve @param {number[]} middles
    * @param {{at: number, low: number, high: number}} peak @returns {EndPoint | null} */
   function refined(curve, middles, peak) {
-    const [low, top, high] = [peak.low, peak.at, peak.high].map((at) => readAt(curve, middles[at]));
-    let about = middles[peak.at];
-    let pH = top;
+    const [start, stop] = [middles[peak.low], middles[peak.high]];
+    const [low, high] = [readAt(curve, start), readAt(curve, stop)];
+    let pH = 0.5 * (low + high);
+    let about = crossing(curve, start, stop, pH);
     let found = null;
     for (let round = 0; round < ROUNDS; round += 1) {
       const ends = [pH + REACH * (low - pH), pH + REACH * (high - pH)];
@@ -190,6 +194,20 @@
     return found;
   }
 
+  /** The volume between two at which the readings first pass one. Mirrors `_crossing`.
+   * @param {Turned} curve @param {number} start @param {number} stop @param {number} pH
+   * @returns {number} */
+  function crossing(curve, start, stop, pH) {
+    const first = curve.volume.findIndex((each) => each >= start);
+    for (let at = first; at < curve.volume.length && curve.volume[at] <= stop; at += 1) {
+      if (!(curve.pH[at] > pH)) continue;
+      if (at === first) break;
+      const share = (pH - curve.pH[at - 1]) / (curve.pH[at] - curve.pH[at - 1]);
+      return curve.volume[at - 1] + share * (curve.volume[at] - curve.volume[at - 1]);
+    }
+    return 0.5 * (start + stop);
+  }
+
   /** The reading at a volume, between points by a straight line.
    * @param {Turned} curve @param {number} volume @returns {number} */
   function readAt(curve, volume) {
@@ -202,18 +220,17 @@
     return y0 + ((y1 - y0) / (x1 - x0)) * (volume - x0);
   }
 
-  /** The points between two readings about a volume, at least the nearest few.
+  /** The points between two readings about a volume, at least a few.
    * Mirrors `_window`.
    * @param {Turned} curve @param {number} about @param {number[]} ends
    * @returns {[number, number]} the first and the last */
   function windowAbout(curve, about, [low, high]) {
     const inside = (/** @type {number} */ at) => curve.pH[at] > low && curve.pH[at] < high;
-    const nearest = curve.volume.map((_, at) => at)
-      .sort((one, other) =>
-        Math.abs(curve.volume[one] - about) - Math.abs(curve.volume[other] - about))
-      .slice(0, FEWEST);
-    let start = Math.min(...nearest);
-    let stop = Math.max(...nearest);
+    const beyond = curve.volume.findIndex((each) => each >= about);
+    const after = beyond < 0 ? curve.volume.length : beyond;
+    // As many on either side: a smoothing of one side says nothing of the other.
+    let start = Math.min(Math.max(after - (FEWEST >> 1), 0), curve.volume.length - FEWEST);
+    let stop = start + FEWEST - 1;
     while (start > 0 && inside(start - 1)) start -= 1;
     while (stop < curve.volume.length - 1 && inside(stop + 1)) stop += 1;
     return [start, stop];
@@ -228,7 +245,7 @@
     const pH = curve.pH.slice(start, stop + 1);
     const columns = pH.map((each) => [1, 10 ** (each - about), -(10 ** (about - each))]);
     const noise = Math.max(curve.noise, LEAST_NOISE);
-    let weights = columns.map(([, up, down]) => 1 / (up - down));
+    let weights = columns.map(() => 1);
     let [centre, a, b] = [NaN, NaN, NaN];
     for (let round = 0; round < ROUNDS; round += 1) {
       const spread = spreadOf(columns, weights);

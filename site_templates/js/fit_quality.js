@@ -50,19 +50,27 @@
     if (freedom < FEWEST) return { kind: "too few points", about: [] };
     if (!Number.isFinite(chiSquared)) return { kind: "no solution", about: [] };
     if (hidden.includes(true)) return { kind: "not separable", about: where(hidden) };
-    if (atBound.includes(true)) return { kind: "at a bound", about: where(atBound) };
-    if (chiSquared > MISFIT) return { kind: "does not fit", about: [] };
     const poor = free.map((each, at) => errors[at] > USEFUL[each.kind]);
-    if (!poor.includes(true)) return { kind: "well determined", about: [] };
-    let best = { tie: 0, pair: [0, 0] };
-    for (let i = 0; i < free.length; i += 1) {
-      for (let j = 0; j < free.length; j += 1) {
-        const tie = i === j || !poor[j] ? 0 : Math.abs(correlation[i][j]);
-        if (tie > best.tie) best = { tie, pair: [Math.min(i, j), Math.max(i, j)] };
-      }
+    const tied = tiedPair(correlation, poor);
+    if (atBound.includes(true) && !tied.some((at) => atBound[at])) {
+      return { kind: "at a bound", about: where(atBound) };
     }
-    if (best.tie > TIED) return { kind: "not separable", about: best.pair.map((at) => keys[at]) };
-    return { kind: "poorly determined", about: where(poor) };
+    if (chiSquared > MISFIT && !atBound.includes(true)) return { kind: "does not fit", about: [] };
+    if (tied.length > 0) return { kind: "not separable", about: tied.map((at) => keys[at]) };
+    if (poor.includes(true)) return { kind: "poorly determined", about: where(poor) };
+    return { kind: "well determined", about: [] };
+  }
+
+  /** The two quantities, one of them poor, that are nearly one; none where none are.
+   * Mirrors `_tied`.
+   * @param {number[][]} correlation @param {boolean[]} poor @returns {number[]} */
+  function tiedPair(correlation, poor) {
+    let best = { tie: TIED, pair: [] };
+    correlation.forEach((row, i) => row.forEach((value, j) => {
+      const tie = i === j || !poor[j] ? 0 : Math.abs(value);
+      if (tie > best.tie) best = { tie, pair: [Math.min(i, j), Math.max(i, j)] };
+    }));
+    return best.pair;
   }
 
   bf.fit_quality = { covariance, verdict };
