@@ -9,7 +9,7 @@ Point = tuple[float, float]
 Path = list[Point]
 
 TOLERANCE = 0.25  # px that a simplified line may leave the true one
-CROWDED = 2.0  # px; of points in the same square of this side one is drawn
+CROWDED = 3.0  # px; of points in the same square of this side one is drawn
 
 
 @dataclass(frozen=True, slots=True)

@@ -31,13 +31,13 @@ def measured_figure(
     unit, scale = volume_unit(points)
     end = float(np.max(points.volume))
     volume = np.linspace(0.0, end, CURVE_POINTS)
-    curves = [("recipe", RECIPE, predicted_curve(experiment, volume).state.pH)]
+    # Points come first, and lie under the curves where there are thousands of them.
+    series = [("measured", "measured", points.volume * scale, points.pH)]
+    series.append(("recipe", RECIPE, volume * scale, predicted_curve(experiment, volume).state.pH))
     if fit is not None:
         free = tuple(each.free for each in fit.estimates)
         best = modelled(experiment, volume, free, fit.parameters)
-        curves.append(("fit", BEST, best.reading))
-    series = [(name, label, volume * scale, pH) for name, label, pH in curves]
-    series.append(("measured", "measured", points.volume * scale, points.pH))
+        series.append(("fit", BEST, volume * scale, best.reading))
     x = Axis(label="volume of titrant", unit=unit, low=0.0, high=end * scale)
     readings = np.concatenate([pH for _, _, _, pH in series])
     low, high = float(np.nanmin(readings)) - MARGIN, float(np.nanmax(readings)) + MARGIN

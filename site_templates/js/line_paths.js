@@ -5,7 +5,7 @@
   "use strict";
 
   const TOLERANCE = 0.25; // px
-  const CROWDED = 2; // px; of points in the same square of this side one is drawn
+  const CROWDED = 3; // px; of points in the same square of this side one is drawn
 
   /** The parts of a line that lie in the frame; a point that is not finite is a gap.
    * @param {Point[]} points @param {Box} frame @returns {Point[][]} */

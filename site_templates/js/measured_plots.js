@@ -26,10 +26,11 @@
     const end = points.volume.reduce((most, each) => Math.max(most, each), 0);
     const volume = Array.from({ length: CURVE_POINTS }, (_, k) => (k * end) / (CURVE_POINTS - 1));
     const along = volume.map((each) => each * scale);
-    const series = [line("recipe", RECIPE, along, predictedCurve(experiment, volume).state.pH)];
-    if (fit !== null) series.push(line("fit", BEST, along, fittedCurve(experiment, volume, fit)));
     const places = points.volume.map((each) => each * scale);
-    series.push({ ...line("measured", "measured", places, points.pH), points: true });
+    // Points come first, and lie under the curves where there are thousands of them.
+    const series = [{ ...line("measured", "measured", places, points.pH), points: true }];
+    series.push(line("recipe", RECIPE, along, predictedCurve(experiment, volume).state.pH));
+    if (fit !== null) series.push(line("fit", BEST, along, fittedCurve(experiment, volume, fit)));
     const [low, high] = ends(series.flatMap((each) => each.y));
     const x = axis("volume of titrant", unit, 0, end * scale);
     const measured = lines(
