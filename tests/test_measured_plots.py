@@ -28,7 +28,7 @@ def circles(drawing: str) -> list[tuple[float, float]]:
     """Return the middles of the circles of a drawing."""
     found = []
     for path in ET.fromstring(drawing).iter("path"):
-        if path.get("class", "").startswith("points "):
+        if path.get("class", "").startswith("circles "):
             parts = path.get("d", "").split(CIRCLE)
             assert parts.pop() == ""
             for part in parts:

@@ -81,7 +81,7 @@ def _series(series: Series, paths: Sequence[Path]) -> str:
     style = f"s{series.style % len(STYLES)}"
     if series.points:
         starts = [f"M{tenths(each[0][0] - RADIUS)} {tenths(each[0][1])}" for each in paths]
-        return _path(f"points {style}", "".join(start + CIRCLE for start in starts))
+        return _path(f"circles {style}", "".join(start + CIRCLE for start in starts))
     return _path(f"line {style}", "".join(path_text(each) for each in paths))
 
 

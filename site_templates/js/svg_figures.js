@@ -37,7 +37,7 @@
     const style = "s" + (each.style % bf.figures.STYLES);
     if (each.points) {
       const starts = paths.map(([[x, y]]) => "M" + tenths(x - RADIUS) + " " + tenths(y));
-      return path("points " + style, starts.map((start) => start + CIRCLE).join(""));
+      return path("circles " + style, starts.map((start) => start + CIRCLE).join(""));
     }
     return path("line " + style, paths.map(pathText).join(""));
   }
