@@ -5,11 +5,12 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from bufferfolio.activity import MODELS, ActivityModel
-from bufferfolio.composition import LITRE, Addition, addition, contents, water_mass
+from bufferfolio.activity import ActivityModel
+from bufferfolio.composition import LITRE, Addition
 from bufferfolio.definitions import Formulation, Interaction, Library, Titrant
 from bufferfolio.errors import BufferfolioError
 from bufferfolio.speciation import Mixture
+from bufferfolio.subjects import subject_of
 from bufferfolio.titration import Curve, titrate
 from bufferfolio.water import FloatArray, density
 
@@ -51,27 +52,20 @@ def experiment_of(
     Raises: NotALiquid for a titrant that is weighed.
     Source: definition; the approximation as in `composition.water_mass`.
     """
-    added = addition(titrant, library.families, formulation.make_up.temperature)
+    subject = subject_of(replace(formulation, titrants=(*formulation.titrants, titrant)), library)
+    added = subject.additions[-1]
     if added.volume is None:
         raise NotALiquid(f"{titrant.label} is a solid: its solution needs a strength")
-    extra = (*(each.reagent for each in formulation.titrants), titrant.reagent)
-    mixture = contents(formulation, library.families, extra)
-    if sample_volume is None:
-        water = water_mass(formulation.make_up)
-    else:
+    water = subject.water
+    if sample_volume is not None:
         water = sample_volume * float(density(np.array(temperature)))
-    present = set(mixture.species)
     return Experiment(
-        mixture=mixture,
+        mixture=subject.mixture,
         water=water,
         added=added,
         temperature=temperature,
-        model=MODELS[formulation.model],
-        interactions=tuple(
-            pair
-            for pair in library.interactions
-            if pair.cation in present and pair.anion in present
-        ),
+        model=subject.model,
+        interactions=subject.interactions,
     )
 
 

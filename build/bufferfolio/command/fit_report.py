@@ -108,46 +108,49 @@ def as_json(found: Findings) -> dict[str, object]:
         "titrant": found.titrant.label,
         "temperature_celsius": _number(result.experiment.temperature - ZERO_CELSIUS),
         "points": int(found.points.pH.size),
-        "estimates": [
-            {
-                "quantity": each.free.key,
-                "value": _number(each.value),
-                "standard_error": _number(each.standard_error),
-                "unit": quantity_unit(each.free),
-                "recipe": _number(each.recipe),
-                "bounds": [_number(each.low), _number(each.high)],
-            }
-            for each in result.estimates
-        ],
+        "estimates": [_estimate_data(each) for each in result.estimates],
         "correlation": [_numbers(row) for row in result.correlation.tolist()],
         "reduced_chi_squared": _number(result.reduced_chi_squared),
         "freedom": result.freedom,
         "precision": {"pH": result.precision.pH, "volume_m3": _number(result.precision.volume)},
         "verdict": {"kind": result.verdict.kind, "words": verdict_words(result)},
-        "end_points": [
-            {
-                "volume_m3": _number(each.volume),
-                "standard_error_m3": _number(each.standard_error),
-                "pH": _number(each.pH),
-                "points_smoothed": each.window,
-            }
-            for each in found.end_points
-        ],
-        "gran": [
-            {
-                "side": each.side,
-                "kind": each.kind,
-                "family": each.family or None,
-                "step": each.step + 1 if each.kind == "weak" else None,
-                "volume_m3": _number(each.volume),
-                "standard_error_m3": _number(each.standard_error),
-                "points": int(each.x.size),
-            }
-            for each in found.gran_lines
-        ],
+        "end_points": [_end_point_data(each) for each in found.end_points],
+        "gran": [_gran_data(each) for each in found.gran_lines],
         "volumes_m3": _numbers(found.points.volume.tolist()),
         "predicted": _numbers(result.predicted.tolist()),
         "residuals": _numbers(result.residuals.tolist()),
+    }
+
+
+def _estimate_data(each: Estimate) -> dict[str, object]:
+    return {
+        "quantity": each.free.key,
+        "value": _number(each.value),
+        "standard_error": _number(each.standard_error),
+        "unit": quantity_unit(each.free),
+        "recipe": _number(each.recipe),
+        "bounds": [_number(each.low), _number(each.high)],
+    }
+
+
+def _end_point_data(each: EndPoint) -> dict[str, object]:
+    return {
+        "volume_m3": _number(each.volume),
+        "standard_error_m3": _number(each.standard_error),
+        "pH": _number(each.pH),
+        "points_smoothed": each.window,
+    }
+
+
+def _gran_data(each: GranLine) -> dict[str, object]:
+    return {
+        "side": each.side,
+        "kind": each.kind,
+        "family": each.family or None,
+        "step": each.step + 1 if each.kind == "weak" else None,
+        "volume_m3": _number(each.volume),
+        "standard_error_m3": _number(each.standard_error),
+        "points": int(each.x.size),
     }
 
 
