@@ -13,8 +13,10 @@ import pytest
 from playwright.sync_api import Page
 
 from bufferfolio import resources
+from bufferfolio.bokeh_figures import bokeh_script, skeletons_script
 from bufferfolio.end_points import end_points
 from bufferfolio.engine_data import subject_data
+from bufferfolio.figure_styles import stylesheet
 from bufferfolio.figures import as_data, rounded
 from bufferfolio.fit_words import verdict_words, with_error
 from bufferfolio.fitting import fit
@@ -242,3 +244,31 @@ def test_drawings_of_lines_and_points_are_the_same_characters(twin: Page) -> Non
     call = "(all) => JSON.parse(all).map((each) => bufferfolio.svg_figures.svg(each))"
     there = twin.evaluate(call, json.dumps([as_data(figure) for figure in figures]))
     assert there == [svg(rounded(figure)) for figure in figures]
+
+
+def test_the_plot_shows_points_and_lines_where_the_drawing_does(twin: Page) -> None:
+    """Circles carry every point; lines come without them, each in its own style."""
+    twin.set_viewport_size({"width": 700, "height": 600})
+    script = resources.templates() / "js" / "bokeh_figures.js"
+    for content in (bokeh_script().decode(), skeletons_script(), script.read_text("utf-8")):
+        twin.add_script_tag(content=content)
+    twin.add_style_tag(content=stylesheet())
+    case = made(PLANS[5], 41, seed=1)
+    result = fit(case.experiment, case.points, case.free, case.precision)
+    figures = measured_figure(case.experiment, case.points, end_points(case.points), result)
+    call = """
+      async (figure) => {
+        const element = document.body.appendChild(document.createElement("div"));
+        element.style.width = "520px";
+        const { parts } = await bufferfolio.bokeh_figures.embed(element, figure);
+        const shown = (renderers) => renderers.filter((each) => each.visible).map((each) =>
+          [each.name, each.data_source.data.x.length, each.glyph.type]);
+        return [shown(parts.lines), shown(parts.points)];
+      }
+    """
+    measured, residuals = (twin.evaluate(call, as_data(figure)) for figure in figures)
+    assert measured == [
+        [["recipe and label", 241, "Line"], ["best fit", 241, "Line"]],
+        [["measured", 41, "Scatter"]],
+    ]
+    assert residuals == [[], [["measured less best fit", 41, "Scatter"]]]
