@@ -23,6 +23,7 @@ from bufferfolio.fitting import fit
 from bufferfolio.gran import gran_lines
 from bufferfolio.measured import parsed, told
 from bufferfolio.measured_plots import measured_figure
+from bufferfolio.pages import SHEET_SCRIPTS
 from bufferfolio.subjects import subject_of
 from bufferfolio.svg_figures import svg
 from measured_cases import CASES
@@ -31,14 +32,7 @@ from recipes import shipped
 from sample_figures import random_figures
 
 # In the order in which a page loads them.
-SCRIPTS: Final = (
-    "water", "temperature", "activity", "speciation", "balance", "newton", "bracketing",
-    "equilibrium", "composition", "buffering", "titration", "subjects", "measured_layout",
-    "measured", "experiments", "linear", "curve_derivatives", "fit_parameters", "fit_model",
-    "fit_quality", "fitting", "end_points", "gran", "figure_ticks", "line_paths", "label_places",
-    "contours", "figures", "figure_layout", "svg_figures", "formatting", "plots", "fit_words",
-    "measured_plots",
-)  # fmt: skip
+SCRIPTS: Final = SHEET_SCRIPTS[: SHEET_SCRIPTS.index("panel_state")]
 LIMIT: Final = 1e-6
 
 HELPERS: Final = """
@@ -249,8 +243,7 @@ def test_drawings_of_lines_and_points_are_the_same_characters(twin: Page) -> Non
 def test_the_plot_shows_points_and_lines_where_the_drawing_does(twin: Page) -> None:
     """Circles carry every point; lines come without them, each in its own style."""
     twin.set_viewport_size({"width": 700, "height": 600})
-    script = resources.templates() / "js" / "bokeh_figures.js"
-    for content in (bokeh_script().decode(), skeletons_script(), script.read_text("utf-8")):
+    for content in (bokeh_script().decode(), skeletons_script()):
         twin.add_script_tag(content=content)
     twin.add_style_tag(content=stylesheet())
     case = made(PLANS[5], 41, seed=1)
