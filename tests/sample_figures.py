@@ -117,6 +117,7 @@ def _random_lines(random: np.random.Generator) -> Figure:
                 x=_at(x, np.cos(along * 8) if random.random() < 0.1 else along),
                 y=np.round(values, 1) if random.random() < 0.2 else values,
                 visible=bool(random.random() < 0.9),
+                points=at % 4 == 3,
             )
         )
     return Figure(

@@ -8,11 +8,11 @@ from collections.abc import Iterator
 
 import pytest
 
-from bufferfolio.bokeh_figures import SERIES, bokeh_script, skeletons_script
+from bufferfolio.bokeh_figures import POINTS, SERIES, bokeh_script, skeletons_script
 from bufferfolio.figure_styles import STYLES
 
 START = "(globalThis.bufferfolio=globalThis.bufferfolio||{}).skeletons="
-LINES = ["Line"] * SERIES + ["VSpan", "HSpan", "Text"]
+LINES = ["Line"] * SERIES + ["Scatter"] * POINTS + ["VSpan", "HSpan", "Text"]
 # In the order that js/bokeh_figures.js counts on.
 GLYPHS = {
     "lines": LINES,

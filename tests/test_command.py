@@ -143,7 +143,9 @@ def test_a_wrong_command_line_ends_with_2(
     assert printed.out == ""
 
 
-@pytest.mark.parametrize("words", [("--help",), *((a, "--help") for a in ("check", "build"))])
+@pytest.mark.parametrize(
+    "words", [("--help",), *((a, "--help") for a in ("check", "build", "fit"))]
+)
 def test_help_ends_with_0_and_names_the_codes(words: tuple[str, ...], capsys: Printed) -> None:
     assert run(*words) == ExitCode.DONE
     out = capsys.readouterr().out
@@ -153,7 +155,7 @@ def test_help_ends_with_0_and_names_the_codes(words: tuple[str, ...], capsys: Pr
 def test_every_example_in_the_help_is_understood(capsys: Printed) -> None:
     """Each example gets past the parser: none of them may end as a wrong command line."""
     seen = 0
-    for action in ("check", "build", "predict", "new"):
+    for action in ("check", "build", "predict", "fit", "new"):
         assert run(action, "--help") == ExitCode.DONE
         _, _, rest = capsys.readouterr().out.partition("examples:\n")
         for line in rest.split("\n\n")[0].splitlines():

@@ -20,7 +20,7 @@ from bufferfolio import resources
 from bufferfolio.definitions import Library
 from bufferfolio.formatting import celsius, chemical, fixed, milli, percent, significant
 from bufferfolio.hazards import STATEMENTS
-from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, PageReport, write_site
+from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, SHEET_SCRIPTS, PageReport, write_site
 from bufferfolio.search_words import typed
 from bufferfolio.sheets import Sheet, sheet_of
 from bufferfolio.temperature import pK_at
@@ -170,10 +170,11 @@ def test_nothing_half_made_shows(folio: Site, name: str) -> None:
 
 def test_every_script_is_linked_and_served(folio: Site) -> None:
     there = {path.stem for path in (resources.templates() / "js").glob("*.js")}
-    assert {*SCRIPTS, *INDEX_SCRIPTS} == there
-    for name in ["formulations/tris-assay.html", "families/tris.html"]:
+    assert {*SHEET_SCRIPTS, *INDEX_SCRIPTS} == there
+    expected = {"formulations/tris-assay.html": SHEET_SCRIPTS, "families/tris.html": SCRIPTS}
+    for name, scripts in expected.items():
         linked = [s.attributes["src"] for s in folio.pages[name].all("script", defer="")]
-        assert linked == [f"../assets/{script}.js" for script in SCRIPTS]
+        assert linked == [f"../assets/{script}.js" for script in scripts]
     assets = {path.name for path in (folio.folder / "assets").iterdir()}
     shared = {"site.css", "bokeh.min.js", "skeletons.js"}
     assert assets == {*shared, *(f"{script}.js" for script in there)}

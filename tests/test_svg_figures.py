@@ -161,7 +161,7 @@ def test_drawings_are_sound_markup_with_a_name_and_no_numbers_gone_wrong() -> No
         assert figure.x.title in titles
         assert figure.y.title in titles
         for path in root.iter("path"):
-            assert re.fullmatch(r"[MLHVZvh\d. -]+", path.get("d", "")), path.get("d")
+            assert re.fullmatch(r"[MLHVZvha\d. -]+", path.get("d", "")), path.get("d")
 
 
 @pytest.mark.parametrize("figure", [fractions_sample(), map_sample()], ids=lambda each: each.kind)

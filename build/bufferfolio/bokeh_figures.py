@@ -25,6 +25,7 @@ from bokeh.models import (
     PanTool,
     Quad,
     Range1d,
+    Scatter,
     Text,
     VSpan,
     WheelZoomTool,
@@ -39,6 +40,7 @@ from bufferfolio.figure_styles import STYLES
 from bufferfolio.figure_ticks import Scale
 
 SERIES = 10  # lines that one plot has room for
+POINTS = 2  # series of points likewise
 
 
 def skeletons_script() -> str:
@@ -81,11 +83,16 @@ def _item(plot: empty_figure) -> object:
 
 
 def _lines(scale: Scale) -> empty_figure:
-    """Return an empty plot: ten lines, marks across x and across y, words."""
+    """Return an empty plot: ten lines, points twice, marks across x and across y, words."""
     plot = _plot(scale)
     lines = [_add(plot, Line(x="x", y="y", line_width=2.2), "x", "y") for _ in range(SERIES)]
+    points = [
+        _add(plot, Scatter(x="x", y="y", size=6, line_width=1.4, fill_color=None), "x", "y")
+        for _ in range(POINTS)
+    ]
     _add_marks_and_words(plot)
-    plot.add_tools(HoverTool(renderers=lines, line_policy="nearest", tooltips=[("", "$name")]))
+    readable = [*lines, *points]
+    plot.add_tools(HoverTool(renderers=readable, line_policy="nearest", tooltips=[("", "$name")]))
     return plot
 
 

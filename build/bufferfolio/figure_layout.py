@@ -17,7 +17,7 @@ from bufferfolio.label_places import (
     profile,
     text_width,
 )
-from bufferfolio.line_paths import Box, Path, Point, clipped, simplified
+from bufferfolio.line_paths import Box, Path, Point, clipped, scattered, simplified
 
 WIDTH, TALL = 520, 336  # of the drawing; 14 px text stays above 9 px on a phone of 360 px
 FRAME = Box(54.0, 30.0, 510.0, 290.0)
@@ -64,7 +64,7 @@ def across(axis: Axis, value: float, start: float, end: float) -> float:
 
 
 def series_paths(figure: Figure, series: Series, frame: Box) -> list[Path]:
-    """Return a series in px: cut at gaps and at the frame, and simplified."""
+    """Return a series in px: cut at gaps and at the frame, and simplified; points stay alone."""
     points = [
         (
             across(figure.x, x, frame.left, frame.right),
@@ -72,6 +72,8 @@ def series_paths(figure: Figure, series: Series, frame: Box) -> list[Path]:
         )
         for x, y in zip(series.x.tolist(), series.y.tolist(), strict=True)
     ]
+    if series.points:
+        return scattered(points, frame)
     return [simplified(path) for path in clipped(points, frame)]
 
 

@@ -119,6 +119,7 @@ RULES: Final = (
     # A point of no length, as wide as its stroke.
     "svg.figure path.point.s0{stroke-width:6.5;stroke-linecap:round}",
     "svg.figure.swatch.spot{width:14px;height:14px}",
+    "svg.figure path.circles{fill:none;stroke-width:1.4;stroke-dasharray:none}",
     "svg.figure .mark{fill:none;stroke:var(--figure-mark);stroke-width:1}",
     "svg.figure .limit{fill:none;stroke:var(--figure-mark);stroke-width:2.4}",
     "svg.figure .iso{fill:none;stroke:var(--figure-frame);stroke-width:.8}",

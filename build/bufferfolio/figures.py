@@ -37,7 +37,7 @@ class Axis:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Series:
-    """One line; NaN in `y` leaves a gap."""
+    """One line, or points of their own; NaN in `y` leaves a gap."""
 
     name: str  # key that a legend and the page's script use
     label: str
@@ -45,6 +45,7 @@ class Series:
     x: FloatArray
     y: FloatArray
     visible: bool = True
+    points: bool = False  # small open circles in place of a line
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -94,6 +95,7 @@ class Entry:
     label: str
     style: int  # of the swatch: class s<style>
     visible: bool
+    points: bool
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -114,6 +116,7 @@ def legend(figure: Figure) -> tuple[Entry, ...]:
             label=each.label,
             style=each.style % len(STYLES),
             visible=each.visible,
+            points=each.points,
         )
         for each in figure.series
     )
@@ -188,6 +191,7 @@ def as_data(figure: Figure) -> dict[str, object]:
                 "x": _plain(each.x.tolist()),
                 "y": _plain(each.y.tolist()),
                 "visible": each.visible,
+                "points": each.points,
             }
             for each in figure.series
         ],

@@ -9,6 +9,7 @@ Point = tuple[float, float]
 Path = list[Point]
 
 TOLERANCE = 0.25  # px that a simplified line may leave the true one
+CROWDED = 3.0  # px; of points in the same square of this side one is drawn
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,6 +79,20 @@ def simplified(path: Sequence[Point]) -> Path:
             stack.append((first, furthest))
             stack.append((furthest, last))
     return [path[at] for at in sorted(keep)]
+
+
+def scattered(points: Sequence[Point], frame: Box) -> list[Path]:
+    """Return the points inside the frame as paths of no length, without those that hide others."""
+    taken: set[tuple[int, int]] = set()
+    paths = []
+    for x, y in points:
+        # A comparison with what is not finite is false.
+        if frame.left <= x <= frame.right and frame.top <= y <= frame.bottom:
+            square = (math.floor(x / CROWDED), math.floor(y / CROWDED))
+            if square not in taken:
+                taken.add(square)
+                paths.append([(x, y), (x, y)])
+    return paths
 
 
 def _square_distance(point: Point, start: Point, end: Point) -> float:

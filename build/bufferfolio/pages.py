@@ -132,7 +132,7 @@ def _write_sheets(
     writer: Writer, library: Library, numbers: Mapping[str, int], progress: Progress
 ) -> tuple[tuple[SheetContext, ...], tuple[PageReport, ...]]:
     contexts, reports = [], []
-    shell = Shell(page="sheet", section="formulations", top="../", scripts=SCRIPTS)
+    shell = Shell(page="sheet", section="formulations", top="../", scripts=SHEET_SCRIPTS)
     for key, formulation in sorted(library.formulations.items()):
         progress(formulation.title)
         start = time.perf_counter()
@@ -178,7 +178,7 @@ def write_assets(folder: Path) -> None:
     templates = resources.templates()
     style = (templates / "css" / "site.css").read_text(encoding="utf-8")
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
-    for name in sorted({*SCRIPTS, *INDEX_SCRIPTS}):
+    for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
         (folder / f"{name}.js").write_text(script, encoding="utf-8", newline="\n")
     (folder / "skeletons.js").write_text(skeletons_script(), encoding="utf-8", newline="\n")
@@ -270,5 +270,24 @@ SCRIPTS: Final = (
     "panel_figures",
     "panel",
 )
+
+# What a sheet needs besides for a titration of one's own, before anything of the panel.
+TITRATION_SCRIPTS: Final = (
+    "measured_layout",
+    "measured",
+    "experiments",
+    "linear",
+    "curve_derivatives",
+    "fit_parameters",
+    "fit_model",
+    "fit_quality",
+    "fitting",
+    "end_points",
+    "gran",
+    "fit_words",
+    "measured_plots",
+)
+_PANEL: Final = SCRIPTS.index("panel_state")
+SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])
 
 INDEX_SCRIPTS: Final = ("panel_state", "panel_index")

@@ -26,6 +26,8 @@ from bufferfolio.line_paths import Box, Path, Point
 
 SMALL_WIDTH, SMALL_TALL = 160, 100
 SMALL_FRAME = Box(4.0, 4.0, 156.0, 96.0)
+CIRCLE = "a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0"  # around a point, from its left end
+RADIUS = 2.5
 BASELINE = 10.5  # px from a text box's top to the text's baseline
 
 
@@ -76,8 +78,11 @@ def _map(figure: Figure, cells: Cells) -> str:
 
 
 def _series(series: Series, paths: Sequence[Path]) -> str:
-    drawn = "".join(path_text(each) for each in paths)
-    return _path(f"line s{series.style % len(STYLES)}", drawn)
+    style = f"s{series.style % len(STYLES)}"
+    if series.points:
+        starts = [f"M{tenths(each[0][0] - RADIUS)} {tenths(each[0][1])}" for each in paths]
+        return _path(f"circles {style}", "".join(start + CIRCLE for start in starts))
+    return _path(f"line {style}", "".join(path_text(each) for each in paths))
 
 
 def _points(figure: Figure, series: Series) -> str:

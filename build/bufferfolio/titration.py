@@ -195,13 +195,16 @@ def _candidates(
     net = float(mixture.strong_charge)
     return [
         (amount, size, family, order)
-        for required, size, family, order in _proton_ladder(mixture, constants)
+        for required, size, family, order in proton_ladder(mixture, constants)
         if (amount := (required - net) / charge) > 1e-3 * size
     ]
 
 
-def _proton_ladder(mixture: Mixture, constants: Constants) -> list[tuple[float, float, str, int]]:
-    """List (strong charge that is met, size of the step, family, step), strongest acid first."""
+def proton_ladder(mixture: Mixture, constants: Constants) -> list[tuple[float, float, str, int]]:
+    """Return (strong charge that is met, size of the step, family, step), strongest acid first.
+
+    Mixture and constants are of one solution: totals (families,), pK (steps, 1).
+    """
     protonated = sum(
         family.charge * float(total)
         for family, total in zip(mixture.families, mixture.totals, strict=True)

@@ -10,6 +10,7 @@
   "use strict";
 
   const SERIES = 10; // as in bokeh_figures.py
+  const POINTS = 2;
   const TOOLS = ["box", "wheel", "pan"];
 
   /** Draw a figure into an element, which gets the shape of the static drawing.
@@ -125,7 +126,8 @@
     const { renderers } = plot;
     const [upright, level, words] = renderers.slice(-3);
     if (shape !== "map") {
-      return { lines: renderers.slice(0, SERIES), upright, level, words };
+      const points = renderers.slice(SERIES, SERIES + POINTS);
+      return { lines: renderers.slice(0, SERIES), points, upright, level, words };
     }
     const [bands, cells, between, limits] = renderers;
     return { bands, cells, between, limits, upright, level, words };
@@ -157,21 +159,27 @@
 
   function fillLines(handle, figure) {
     const look = lookOf(handle.element);
+    const lines = figure.series.filter((each) => !each.points);
     handle.parts.lines.forEach((renderer, at) => {
-      const series = figure.series[at];
-      const shown = series !== undefined && series.visible;
-      renderer.visible = shown;
-      if (!shown) {
-        return;
+      if (fillSeries(renderer, lines[at], look)) {
+        renderer.glyph.line_dash = bf.skeletons.dashes[lines[at].style % bf.figures.STYLES];
       }
+    });
+    const points = figure.series.filter((each) => each.points);
+    handle.parts.points.forEach((renderer, at) => fillSeries(renderer, points[at], look));
+    fillWords(handle, bf.figure_layout.linesLayout(figure).words, look);
+  }
+
+  /** Show a series, or nothing where there is none; say whether it is seen. */
+  function fillSeries(renderer, series, look) {
+    const shown = series !== undefined && series.visible;
+    renderer.visible = shown;
+    if (shown) {
       fillSource(renderer, { x: numbers(series.x), y: numbers(series.y) });
       renderer.name = series.label;
-      renderer.glyph.setv({
-        line_color: look.series(series.style),
-        line_dash: bf.skeletons.dashes[series.style % bf.figures.STYLES],
-      });
-    });
-    fillWords(handle, bf.figure_layout.linesLayout(figure).words, look);
+      renderer.glyph.line_color = look.series(series.style);
+    }
+    return shown;
   }
 
   function fillMap(handle, figure, cells) {

@@ -26,7 +26,7 @@
     return start + ((value - low) / (high - low)) * (end - start);
   }
 
-  /** A series in px: cut at gaps and at the frame, and simplified.
+  /** A series in px: cut at gaps and at the frame, and simplified; points stay alone.
    * @param {Figure} figure @param {Series} series @param {Box} frame @returns {Point[][]} */
   function seriesPaths(figure, series, frame) {
     const points = [];
@@ -35,6 +35,9 @@
         across(figure.x, series.x[at], frame.left, frame.right),
         across(figure.y, series.y[at], frame.bottom, frame.top),
       ]);
+    }
+    if (series.points) {
+      return bf.line_paths.scattered(points, frame);
     }
     return bf.line_paths.clipped(points, frame).map(bf.line_paths.simplified);
   }

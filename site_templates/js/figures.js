@@ -3,13 +3,14 @@
  *
  * @typedef {{label: string, unit: string, low: number, high: number, scale: "linear"|"log"}} Axis
  * @typedef {{name: string, label: string, style: number, x: number[], y: number[],
- *   visible: boolean}} Series
+ *   visible: boolean, points: boolean}} Series
  * @typedef {{axis: "x"|"y"|"value", value: number, label: string}} Mark
  * @typedef {{x: number[], y: number[], values: number[][], label: string, unit: string,
  *   decimals: number}} Cells
  * @typedef {{key: string, kind: "lines"|"map", title: string, x: Axis, y: Axis, series: Series[],
  *   marks: Mark[], cells: Cells|null, summary: string}} Figure
- * @typedef {{name: string, label: string, style: number, visible: boolean}} Entry
+ * @typedef {{name: string, label: string, style: number, visible: boolean,
+ *   points: boolean}} Entry
  * @typedef {{low: number, high: number, label: string, colour: number}} Band
  */
 (function (bf) {
@@ -28,6 +29,7 @@
   function legend(figure) {
     return figure.series.map((each) => ({
       name: each.name, label: each.label, style: each.style % STYLES, visible: each.visible,
+      points: each.points,
     }));
   }
 

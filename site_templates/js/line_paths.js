@@ -5,6 +5,7 @@
   "use strict";
 
   const TOLERANCE = 0.25; // px
+  const CROWDED = 3; // px; of points in the same square of this side one is drawn
 
   /** The parts of a line that lie in the frame; a point that is not finite is a gap.
    * @param {Point[]} points @param {Box} frame @returns {Point[][]} */
@@ -85,6 +86,24 @@
     return path.filter((each, at) => keep.has(at));
   }
 
+  /** The points inside the frame as paths of no length, without those that hide others.
+   * @param {Point[]} points @param {Box} frame @returns {Point[][]} */
+  function scattered(points, frame) {
+    const taken = new Set();
+    const paths = [];
+    for (const [x, y] of points) {
+      // A comparison with what is not finite is false.
+      if (frame.left <= x && x <= frame.right && frame.top <= y && y <= frame.bottom) {
+        const square = Math.floor(x / CROWDED) + " " + Math.floor(y / CROWDED);
+        if (!taken.has(square)) {
+          taken.add(square);
+          paths.push([[x, y], [x, y]]);
+        }
+      }
+    }
+    return paths;
+  }
+
   function squareDistance(point, start, end) {
     const acrossX = end[0] - start[0];
     const acrossY = end[1] - start[1];
@@ -98,5 +117,5 @@
     return x * x + y * y;
   }
 
-  bf.line_paths = { clipped, simplified };
+  bf.line_paths = { clipped, scattered, simplified };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

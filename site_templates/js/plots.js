@@ -23,7 +23,7 @@
   }
 
   function line(name, label, x, y) {
-    return { name, label, style: 0, x, y, visible: true };
+    return { name, label, style: 0, x, y, visible: true, points: false };
   }
 
   function mark(along, value, label) {

@@ -2,6 +2,8 @@
 (function (bf) {
   "use strict";
 
+  const CIRCLE = "a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0"; // around a point, from its left end
+  const RADIUS = 2.5;
   const BASELINE = 10.5;
 
   /** The figure as an SVG element. @param {Figure} figure @returns {string} */
@@ -32,7 +34,12 @@
   }
 
   function series(each, paths) {
-    return path("line s" + (each.style % bf.figures.STYLES), paths.map(pathText).join(""));
+    const style = "s" + (each.style % bf.figures.STYLES);
+    if (each.points) {
+      const starts = paths.map(([[x, y]]) => "M" + tenths(x - RADIUS) + " " + tenths(y));
+      return path("circles " + style, starts.map((start) => start + CIRCLE).join(""));
+    }
+    return path("line " + style, paths.map(pathText).join(""));
   }
 
   function marks(figure) {

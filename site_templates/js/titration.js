@@ -178,7 +178,7 @@
       .filter(({ amount, size }) => amount > 1e-3 * size);
   }
 
-  /** What strong charge each step has to meet, strongest acid first. Mirrors `_proton_ladder`.
+  /** What strong charge each step has to meet, strongest acid first. Mirrors `proton_ladder`.
    * @param {Mixture} mixture
    * @param {Constants} constants
    * @returns {{required: number, size: number, family: string, step: number}[]} mol/kg
@@ -198,5 +198,5 @@
     return ladder;
   }
 
-  bf.titration = { titrate, amountToReach, equivalences };
+  bf.titration = { titrate, amountToReach, equivalences, protonLadder };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

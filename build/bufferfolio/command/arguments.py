@@ -32,13 +32,20 @@ class CommandLineError(BufferfolioError):
 class Arguments:
     """The command line, read. What an action does not know has its default here."""
 
-    action: Literal["check", "build", "predict", "evidence", "new"]
+    action: Literal["check", "build", "predict", "fit", "evidence", "new"]
     systems: Path | None  # None: nothing was said; see `chosen_systems`
     out: Path
     strict: bool
     formulation: str
     temperatures: tuple[str, ...]
     additions: tuple[str, ...]
+    data: Path
+    unit: str
+    titrant: str
+    sample_volume: str
+    free: tuple[str, ...]
+    reading_uncertainty: str
+    volume_uncertainty: str
     json: bool
     kind: Kind
     name: str
@@ -62,12 +69,24 @@ def parse(words: Sequence[str]) -> Arguments:
         out=said.get("out", DEFAULT_OUT),
         strict=said.get("strict", False),
         formulation=said.get("formulation", ""),
-        temperatures=tuple(said.get("temperature", ())),
+        temperatures=_listed(said.get("temperature", ())),
         additions=tuple(said.get("add", ())),
+        data=said.get("data", Path()),
+        unit=said.get("unit", "mL"),
+        titrant=said.get("titrant", ""),
+        sample_volume=said.get("sample_volume", ""),
+        free=tuple(said.get("free", DEFAULT_FREE).split(",")),
+        reading_uncertainty=said.get("reading_uncertainty", ""),
+        volume_uncertainty=said.get("volume_uncertainty", ""),
         json=said.get("json", False),
         kind=said.get("kind", "formulation"),
         name=said.get("name", ""),
     )
+
+
+def _listed(said: Sequence[str] | str) -> tuple[str, ...]:
+    """Return what was said once or several times."""
+    return ((said,) if said else ()) if isinstance(said, str) else tuple(said)
 
 
 class _Parser(argparse.ArgumentParser):
@@ -89,6 +108,7 @@ def _parser() -> argparse.ArgumentParser:
     _add_check(actions)
     _add_build(actions)
     _add_predict(actions)
+    _add_fit(actions)
     _add_evidence(actions)
     _add_new(actions)
     return parser
@@ -168,6 +188,28 @@ def _add_predict(actions: "Actions[_Parser]") -> None:
     parser.add_argument("--systems", type=Path, metavar="SYSTEMS", help=SYSTEMS_HELP, default=None)
 
 
+def _add_fit(actions: "Actions[_Parser]") -> None:
+    examples = (
+        '  bufferfolio fit acetate-extract points.csv --sample-volume "50 mL"\n'
+        "  bufferfolio fit tris-assay points.txt --free strength,pK:tris:1,offset --json"
+    )
+    parser = _action(actions, "fit", "fit a model curve to a measured titration", examples)
+    parser.usage = f"{parser.prog} FORMULATION DATA [options]"
+    parser.add_argument("formulation", metavar="FORMULATION", help="its key, or a YAML file")
+    parser.add_argument("data", type=Path, metavar="DATA", help="a text of volumes and readings")
+    for option, metavar, words in FIT_OPTIONS:
+        parser.add_argument(option, metavar=metavar, default="", help=words)
+    parser.add_argument(
+        "--free",
+        default=DEFAULT_FREE,
+        metavar="A,B,…",
+        help="up to four of: strength, total:FAMILY, pK:FAMILY:STEP, offset, slope; else strength",
+    )
+    parser.add_argument("--unit", default="mL", help="of volumes whose heading names none; else mL")
+    parser.add_argument("--json", action="store_true", help="print JSON (keys: see DEVELOPERS.md)")
+    parser.add_argument("--systems", type=Path, metavar="SYSTEMS", help=SYSTEMS_HELP, default=None)
+
+
 def _add_evidence(actions: "Actions[_Parser]") -> None:
     examples = "  bufferfolio evidence\n  bufferfolio evidence --json > evidence.json"
     summary = "compare predictions with every published table"
@@ -194,6 +236,15 @@ def _add_new(actions: "Actions[_Parser]") -> None:
 
 LOCAL_SYSTEMS: Final = Path("systems")
 DEFAULT_OUT: Final = Path("dist")
+DEFAULT_FREE: Final = "strength"
+
+FIT_OPTIONS: Final = (
+    ("--titrant", "TITRANT", "such as 'sodium-hydroxide 0.1 mol/L'; else the formulation's own"),
+    ("--sample-volume", "VOLUME", "such as '50 mL'; else the whole make-up"),
+    ("--temperature", "TEMPERATURE", "of the titration, such as '25 °C'"),
+    ("--reading-uncertainty", "PH", "standard uncertainty of a reading; else 0.02"),
+    ("--volume-uncertainty", "VOLUME", "likewise of a volume; else a thousandth of the largest"),
+)  # fmt: skip
 
 SYSTEMS_HELP: Final = (
     "folder of definitions; else ./systems if there is one, or the shipped library"

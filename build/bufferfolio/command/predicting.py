@@ -24,8 +24,8 @@ from bufferfolio.water import ZERO_CELSIUS
 def predict(arguments: Arguments) -> ExitCode:
     """Print a formulation's numbers at each temperature, after everything was added."""
     library = read_library(chosen_systems(arguments), resources.systems())
-    formulation = _formulation(arguments.formulation, library)
-    temperatures = [_temperature(text) for text in arguments.temperatures]
+    formulation = formulation_named(arguments.formulation, library)
+    temperatures = [temperature_of(text) for text in arguments.temperatures]
     temperatures = temperatures or [reference_temperature(formulation)]
     doses = [_dose(text, library) for text in arguments.additions]
     found = predictions(formulation, library, temperatures, doses)
@@ -36,7 +36,8 @@ def predict(arguments: Arguments) -> ExitCode:
     return ExitCode.DONE
 
 
-def _formulation(name: str, library: Library) -> Formulation:
+def formulation_named(name: str, library: Library) -> Formulation:
+    """Return the formulation of that key, or of the file at that path."""
     if name in library.formulations:
         return library.formulations[name]
     path = Path(name)
@@ -49,7 +50,8 @@ def _formulation(name: str, library: Library) -> Formulation:
     raise CommandLineError(f"unknown formulation {name!r}{close}\naccepted: {known}")
 
 
-def _temperature(text: str) -> float:
+def temperature_of(text: str) -> float:
+    """Return a temperature (K) as it was typed."""
     try:
         return parse_quantity(text, quantities.WATER_TEMPERATURE).value
     except Unfit as problem:

@@ -5,7 +5,15 @@ import sys
 from collections.abc import Callable, Mapping, Sequence
 from typing import Final
 
-from bufferfolio.command import building, checking, console, drafting, evidencing, predicting
+from bufferfolio.command import (
+    building,
+    checking,
+    console,
+    drafting,
+    evidencing,
+    fitting,
+    predicting,
+)
 from bufferfolio.command.arguments import Arguments, CommandLineError, ExitCode, parse
 from bufferfolio.errors import BufferfolioError
 
@@ -47,6 +55,7 @@ ACTIONS: Final[Mapping[str, Callable[[Arguments], ExitCode]]] = {
     "check": checking.check,
     "build": building.build,
     "predict": predicting.predict,
+    "fit": fitting.fit_data,
     "evidence": evidencing.evidence,
     "new": drafting.new,
 }
