@@ -6,13 +6,13 @@ from dataclasses import dataclass
 from typing import Final
 
 from bufferfolio.measurements import (
-    expected_pH,
     meant,
     measured,
     refusal_of,
     shown,
     target_at,
 )
+from bufferfolio.recipes import Recipe, mixture_of
 from bufferfolio.subjects import Subject, solved_at
 from bufferfolio.uncertainty import Band, band_of
 
@@ -63,12 +63,14 @@ def judged(
     reading: float,
     compensation: float | None = None,
     batch_temperature: float | None = None,
+    recipe: Recipe | None = None,
 ) -> Judgement:
     """Return the judgement of one reading.
 
     Shapes: scalar.
     Units: temperatures K; `compensation` is the temperature that the meter's slope is set for,
-        None where the meter follows the sample.
+        None where the meter follows the sample; `recipe` as it was weighed, None: as the
+        formulation says.
     Raises: nothing; what cannot be judged is refused with a reason.
     Source: band and tolerance as `uncertainty.band_of` and the formulation's file have them.
     """
@@ -78,7 +80,7 @@ def judged(
         refusal = refusal_of(subject, batch_temperature, pH)
     if refusal:
         return _refused(refusal, temperature, reading, pH)
-    band, target = band_of(subject, temperature), target_at(subject, temperature)
+    band, target = band_of(subject, temperature, recipe), target_at(subject, temperature)
     stated = subject.formulation.expected
     tolerance = None if stated is None else stated.tolerance
     inside = None if tolerance is None else abs(pH - target) <= tolerance + ROUNDING
@@ -97,21 +99,26 @@ def judged(
         difference=pH - band.pH,
         inside_tolerance=inside,
         within_band=within,
-        batch=_batch(subject, temperature, pH, batch_temperature),
+        batch=_batch(subject, temperature, pH, batch_temperature, recipe),
     )
 
 
 def _batch(
-    subject: Subject, temperature: float, pH: float, batch_temperature: float | None
+    subject: Subject,
+    temperature: float,
+    pH: float,
+    batch_temperature: float | None,
+    recipe: Recipe | None,
 ) -> BatchState | None:
     if batch_temperature is None or batch_temperature == temperature:
         return None
-    there = measured(subject, temperature, pH)
+    there = measured(subject, temperature, pH, recipe=recipe)
+    made = None if recipe is None else mixture_of(recipe, subject.mixture)
     state = solved_at(subject, batch_temperature, there.mixture)
     return BatchState(
         temperature=batch_temperature,
         pH=float(state.pH),
-        expected=expected_pH(subject, batch_temperature),
+        expected=float(solved_at(subject, batch_temperature, made).pH),
         target=target_at(subject, batch_temperature),
         within_use=subject.formulation.use_pH.holds(float(state.pH)),
     )

@@ -137,7 +137,7 @@ def _write_sheets(
         progress(formulation.title)
         start = time.perf_counter()
         sheet = sheet_of(formulation, library)
-        context = sheet_context(sheet, numbers)
+        context = sheet_context(sheet, library, numbers)
         writer.write(f"formulations/{key}.html", "sheet.html", shell, this=context)
         contexts.append(context)
         expected = formulation.expected
@@ -268,6 +268,10 @@ SCRIPTS: Final = (
     "panel_tools",
     "panel_tables",
     "panel_figures",
+    "panel_copy",
+    "panel_judging",
+    "panel_dosing",
+    "panel_field",
     "panel",
 )
 

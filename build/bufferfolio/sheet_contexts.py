@@ -11,9 +11,10 @@ from markupsafe import Markup
 
 from bufferfolio.activity import MODELS, ActivityModel
 from bufferfolio.composition import pure_water
-from bufferfolio.definitions import Family, Formulation, Reagent
+from bufferfolio.definitions import Family, Formulation, Library, Reagent
 from bufferfolio.engine_data import sheet_data
 from bufferfolio.equilibrium import Status
+from bufferfolio.field_data import field_data
 from bufferfolio.figures import as_data
 from bufferfolio.formatting import chemical, mass, plain, volume
 from bufferfolio.make_up_contexts import (
@@ -121,7 +122,7 @@ class SheetContext:
     page_data: Markup
 
 
-def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
+def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) -> SheetContext:
     """Return everything on the page of one formulation."""
     subject, reference = sheet.subject, sheet.reference
     formulation = subject.formulation
@@ -139,6 +140,7 @@ def sheet_context(sheet: Sheet, numbers: Mapping[str, int]) -> SheetContext:
     batch = batch_of(formulation.make_up)
     data = sheet_data(sheet)
     data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
+    data["field"] = field_data(subject, library)
     canonical = json_text(data)
     data["figures"] = {figure.key: as_data(figure) for figure in figures}
     reagents = reagents_of(formulation)

@@ -14,7 +14,8 @@
 
   const { solvedAt } = bf.subjects;
   const { bandOf } = bf.uncertainty;
-  const { expectedPH, meant, measured, refusalOf, shown, targetAt } = bf.measurements;
+  const { mixtureOf } = bf.recipes;
+  const { meant, measured, refusalOf, shown, targetAt } = bf.measurements;
 
   const ROUNDING = 1e-9; // in pH: 8.11 is inside 8.16 ± 0.05 whatever binary fractions say
 
@@ -24,14 +25,17 @@
    * @param {number} reading
    * @param {number | null} [compensation] K, for which the meter's slope is set; null: the sample's
    * @param {number | null} [batchTemperature] K
+   * @param {Recipe | null} [recipe] as it was weighed; null: as the formulation says
    * @returns {Judgement}
    */
-  function judged(subject, temperature, reading, compensation = null, batchTemperature = null) {
+  function judged(
+    subject, temperature, reading, compensation = null, batchTemperature = null, recipe = null,
+  ) {
     const pH = meant(reading, temperature, compensation);
     let refusal = refusalOf(subject, temperature, reading) || refusalOf(subject, temperature, pH);
     if (!refusal && batchTemperature !== null) refusal = refusalOf(subject, batchTemperature, pH);
     if (refusal) return refused(refusal, temperature, reading, pH);
-    const band = bandOf(subject, temperature);
+    const band = bandOf(subject, temperature, recipe);
     const target = targetAt(subject, temperature);
     const tolerance = subject.expected === null ? null : subject.expected.tolerance;
     const inside = tolerance === null ? null : Math.abs(pH - target) <= tolerance + ROUNDING;
@@ -50,7 +54,7 @@
       difference: pH - band.pH,
       inside_tolerance: inside,
       within_band: within,
-      batch: batchOf(subject, temperature, pH, batchTemperature),
+      batch: batchOf(subject, temperature, pH, batchTemperature, recipe),
     };
   }
 
@@ -67,17 +71,19 @@
    * @param {number} temperature K
    * @param {number} pH
    * @param {number | null} batchTemperature K
+   * @param {Recipe | null} recipe
    * @returns {BatchState | null}
    */
-  function batchOf(subject, temperature, pH, batchTemperature) {
+  function batchOf(subject, temperature, pH, batchTemperature, recipe) {
     if (batchTemperature === null || batchTemperature === temperature) return null;
-    const { mixture } = measured(subject, temperature, pH);
+    const { mixture } = measured(subject, temperature, pH, 1, recipe);
+    const made = recipe === null ? subject.mixture : mixtureOf(recipe, subject.mixture);
     const state = solvedAt(subject, batchTemperature, mixture);
     const { low, high } = subject.use_pH;
     return {
       temperature: batchTemperature,
       pH: state.pH,
-      expected: expectedPH(subject, batchTemperature),
+      expected: solvedAt(subject, batchTemperature, made).pH,
       target: targetAt(subject, batchTemperature),
       within_use: low <= state.pH && state.pH <= high,
     };

@@ -31,6 +31,7 @@
    * @property {HTMLElement[]} living elements whose words are out of date with a faulty input
    * @property {Stage} stage
    * @property {string} drawn conditions that the figures show, as words
+   * @property {Field | null} field the sections of a sheet that answer a reading
    */
 
   /** Open the inputs of a page whose engine can be trusted. @param {object} data */
@@ -47,8 +48,9 @@
       living: Array.from(document.querySelectorAll("[data-live]")),
       stage: bf.panel_figures.stageOf(document, data.figures, makers, assets),
       drawn: "",
+      field: data.kind === "sheet" ? bf.panel_field.fieldOf(data) : null,
     };
-    page.drawn = conditionsOf(page.standards);
+    page.drawn = conditionsOf(page.inputs, page.standards);
     bf.panel_inputs.open(inputs, () => change(page));
     openDefaults(page);
     addEventListener("hashchange", () => readAddress(page));
@@ -104,7 +106,8 @@
     for (const element of page.living) element.classList.toggle("stale", reading.faulty);
     if (reading.faulty) return reading;
     const results = show(page, reading.values);
-    const conditions = conditionsOf(reading.texts);
+    if (page.field !== null) bf.panel_field.answer(page.field, reading, results.subject);
+    const conditions = conditionsOf(page.inputs, reading.texts);
     if (conditions !== page.drawn) {
       page.drawn = conditions;
       bf.panel_figures.follow(page.stage, results);
@@ -126,13 +129,17 @@
     return explorationUnder(data, values);
   }
 
-  /** What figures depend on; the size of a batch is not among it. */
-  function conditionsOf(texts) {
+  /** What figures depend on: not the size of a batch, nor what single sections ask for. */
+  function conditionsOf(inputs, texts) {
     const words = [];
     for (const [name, text] of texts) {
-      if (!name.startsWith("batch")) words.push(name + " " + text);
+      if (concernsFigures(inputs.get(name))) words.push(name + " " + text);
     }
     return words.join(", ");
+  }
+
+  function concernsFigures({ name, group }) {
+    return group === "" && !name.startsWith("batch");
   }
 
   /** What holds for numbers that are taken away, a line each. */
@@ -140,7 +147,7 @@
     const lines = [document.title, "conditions: " + drawn];
     for (const input of inputs.values()) {
       const label = document.querySelector('label[for="' + input.field.id + '"]');
-      if (label !== null && !input.name.startsWith("batch")) {
+      if (label !== null && concernsFigures(input)) {
         lines.push(input.name + " is: " + label.textContent.trim().replace(/\s+/g, " "));
       }
     }

@@ -18,7 +18,10 @@
     for (const expected of data.checks) {
       if (!passes(agrees, expected)) failed += 1;
     }
-    return { count: data.checks.length, failed };
+    const count = data.checks.length;
+    if (data.kind !== "sheet") return { count, failed };
+    const field = bf.field_checks.runFieldChecks(bf.subjects.subjectOf(data.subject), data.field);
+    return { count: count + field.count, failed: failed + field.failed };
   }
 
   /** A case that cannot even be worked out has failed. */

@@ -1,15 +1,23 @@
 /* The page's input fields: a text field and sliders for each quantity, in step with each other.
+ * Temperatures are typed in the unit that the reader chose; limits and sliders are in °C.
  *
- * @typedef {{name: string, field: HTMLInputElement | HTMLSelectElement,
+ * @typedef {{name: string, group: string, field: HTMLInputElement | HTMLSelectElement,
  *   sliders: HTMLInputElement[], low: number, high: number, logarithmic: boolean,
- *   message: HTMLElement | null, standard: string}} Input
- * @typedef {{texts: Map<string, string>, values: Record<string, number>, faulty: boolean}} Reading
- *   texts, as they stand in the address; values, of a choice the factor that it stands for
+ *   optional: boolean, degrees: boolean, unit: string, message: HTMLElement | null,
+ *   standard: string}} Input
+ *   group, the section that alone depends on it; "" where the whole page does
+ * @typedef {{texts: Map<string, string>, values: Record<string, number>, faulty: boolean,
+ *   faults: Set<string>}} Reading
+ *   texts, as they stand in the address; values, of a choice the factor that it stands for, of a
+ *   temperature °C, NaN where an optional field is empty; faulty, where an input of the whole page
+ *   cannot be used; faults, the names of all that cannot
  */
 (function (bf) {
   "use strict";
 
-  const { complaint, numberOf } = bf.panel_state;
+  const { celsiusOf, complaint, degreesIn, numberOf } = bf.panel_state;
+
+  const UNIT_CHOICE = "temperature-unit";
 
   /** The inputs of a page, by name.
    * @param {ParentNode} root
@@ -23,10 +31,14 @@
       const sliders = Array.from(twins);
       inputs.set(name, {
         name,
+        group: field.dataset.group || "",
         field,
         sliders,
         low: limit(field.dataset.min, -Infinity),
         high: limit(field.dataset.max, Infinity),
+        optional: field.dataset.optional !== undefined,
+        degrees: field.dataset.quantity === "temperature",
+        unit: "C",
         logarithmic: sliders.some((slider) => slider.dataset.scale === "log10"),
         message: root.querySelector('[data-message="' + name + '"]'),
         standard: standardOf(field),
@@ -56,6 +68,7 @@
       if (input.message !== null) input.message.setAttribute("role", "status");
       const fieldEvent = isChoice(input) ? "change" : "input";
       input.field.addEventListener(fieldEvent, () => {
+        if (input.name === UNIT_CHOICE) useUnit(inputs, input.field.value);
         follow(input);
         changed();
       });
@@ -74,8 +87,41 @@
     return input.field.tagName === "SELECT";
   }
 
+  /** Let temperatures be typed in a unit; what is typed already is written in it. */
+  function useUnit(inputs, unit) {
+    for (const input of inputs.values()) {
+      if (!input.degrees) continue;
+      const celsius = celsiusOf(numberOf(input.field.value), input.unit);
+      input.unit = unit;
+      if (!Number.isNaN(celsius)) input.field.value = degreesText(input, celsius);
+      judge(input);
+    }
+    for (const place of document.querySelectorAll("[data-degrees]")) place.textContent = "°" + unit;
+  }
+
+  /** @param {Input} input @param {number} celsius @returns {string} in its unit, to 0.01 */
+  function degreesText(input, celsius) {
+    return String(Number(degreesIn(celsius, input.unit).toFixed(2)));
+  }
+
+  /** The number in a field, of a temperature °C. @param {Input} input @returns {number} */
+  function valueOf(input) {
+    return celsiusOf(numberOf(input.field.value), input.unit);
+  }
+
+  /** @param {Input} input @returns {string} what is wrong with its text, "" where nothing is */
+  function wrongWith(input) {
+    const text = input.field.value;
+    if (input.optional && text.trim() === "") return "";
+    // The second decimal of a converted limit must not shut it out.
+    const [low, high] = [input.low, input.high].map((limit) =>
+      input.unit === "F" ? Number(degreesIn(limit, "F").toFixed(2)) : limit);
+    return complaint(text, low, high);
+  }
+
   /** The text that belongs to a slider's place. */
   function slidTo(input, slider) {
+    if (input.degrees) return degreesText(input, Number(slider.value));
     if (!input.logarithmic) return slider.value;
     const number = 10 ** Number(slider.value);
     // Three figures, and never a rounding beyond the limits.
@@ -89,7 +135,7 @@
    */
   function follow(input, leader = null) {
     if (judge(input)) return;
-    const number = numberOf(input.field.value);
+    const number = valueOf(input);
     const place = String(input.logarithmic ? Math.log10(number) : number);
     for (const slider of input.sliders) {
       if (slider !== leader) slider.value = place;
@@ -99,7 +145,7 @@
   /** Say what is wrong with a field. @returns {boolean} whether something is */
   function judge(input) {
     if (isChoice(input)) return false;
-    const words = complaint(input.field.value, input.low, input.high);
+    const words = wrongWith(input);
     if (input.message !== null && input.message.textContent !== words) {
       input.message.textContent = words;
     }
@@ -115,20 +161,23 @@
   function read(inputs) {
     const texts = new Map();
     const values = {};
+    const faults = new Set();
     let faulty = false;
     for (const input of inputs.values()) {
       const text = input.field.value;
       if (isChoice(input)) {
         texts.set(input.name, text);
         values[input.name] = Number(input.field.selectedOptions[0].dataset.factor);
-      } else if (complaint(text, input.low, input.high) === "") {
-        values[input.name] = numberOf(text);
-        texts.set(input.name, String(values[input.name]));
+      } else if (wrongWith(input) === "") {
+        values[input.name] = valueOf(input);
+        texts.set(input.name, text.trim() === "" ? "" : String(numberOf(text)));
       } else {
-        faulty = true;
+        values[input.name] = NaN;
+        faults.add(input.name);
+        faulty = faulty || input.group === "";
       }
     }
-    return { texts, values, faulty };
+    return { texts, values, faulty, faults };
   }
 
   /** Set the inputs; what is not named goes back to the page's own value.
@@ -136,16 +185,31 @@
    * @param {Map<string, string>} texts
    */
   function set(inputs, texts) {
+    const choice = inputs.get(UNIT_CHOICE);
+    if (choice !== undefined) {
+      choose(choice, texts.get(UNIT_CHOICE));
+      useUnit(inputs, choice.field.value);
+    }
     for (const input of inputs.values()) {
       const wanted = texts.get(input.name);
       if (!isChoice(input)) {
-        input.field.value = wanted === undefined ? input.standard : wanted;
+        input.field.value = wanted === undefined ? standardIn(input) : wanted;
         follow(input);
-        continue;
+      } else if (input !== choice) {
+        choose(input, wanted);
       }
-      const known = Array.from(input.field.options, (option) => option.value);
-      input.field.value = known.includes(wanted) ? wanted : input.standard;
     }
+  }
+
+  function choose(input, wanted) {
+    const known = Array.from(input.field.options, (option) => option.value);
+    input.field.value = known.includes(wanted) ? wanted : input.standard;
+  }
+
+  /** The page's own setting, in the unit that the reader chose. */
+  function standardIn(input) {
+    if (!input.degrees || input.standard === "" || input.unit === "C") return input.standard;
+    return degreesText(input, numberOf(input.standard));
   }
 
   /** The page's own settings, written as `read` writes them.
@@ -155,7 +219,8 @@
   function standards(inputs) {
     const texts = new Map();
     for (const input of inputs.values()) {
-      const text = isChoice(input) ? input.standard : String(numberOf(input.standard));
+      const plain = isChoice(input) || input.standard === "";
+      const text = plain ? input.standard : String(numberOf(input.standard));
       texts.set(input.name, text);
     }
     return texts;

@@ -16,20 +16,34 @@
 
   /** What is wrong with a typed number, in words; "" where nothing is.
    * @param {string} text
-   * @param {number} low
+   * @param {number} low −Infinity where there is no limit
    * @param {number} high
    * @returns {string}
    */
   function complaint(text, low, high) {
-    const range = written(low) + " to " + written(high);
-    if (text.trim() === "") return "Give a number from " + range + ".";
+    const range = Number.isFinite(low) ? " from " + written(low) + " to " + written(high) : "";
+    if (text.trim() === "") return "Give a number" + range + ".";
     const number = numberOf(text);
     if (Number.isNaN(number)) {
-      return "“" + text.trim() + "” is not a number. Give one from " + range + ".";
+      return "“" + text.trim() + "” is not a number. Give one" + range + ".";
     }
-    if (number < low) return text.trim() + " is too low. Give a number from " + range + ".";
-    if (number > high) return text.trim() + " is too high. Give a number from " + range + ".";
+    if (number < low) return text.trim() + " is too low. Give a number" + range + ".";
+    if (number > high) return text.trim() + " is too high. Give a number" + range + ".";
     return "";
+  }
+
+  /** A number of degrees Celsius in the unit that a reader uses, and back.
+   * @param {number} celsius
+   * @param {string} unit "C" or "F"
+   * @returns {number}
+   */
+  function degreesIn(celsius, unit) {
+    return unit === "F" ? celsius * 1.8 + 32 : celsius;
+  }
+
+  /** @param {number} degrees @param {string} unit "C" or "F" @returns {number} degrees Celsius */
+  function celsiusOf(degrees, unit) {
+    return unit === "F" ? (degrees - 32) / 1.8 : degrees;
   }
 
   function written(number) {
@@ -58,5 +72,5 @@
     return text === "" ? "" : "#" + text;
   }
 
-  bf.panel_state = { numberOf, complaint, settingsOf, hashOf };
+  bf.panel_state = { numberOf, complaint, degreesIn, celsiusOf, settingsOf, hashOf };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));
