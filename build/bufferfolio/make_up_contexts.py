@@ -47,6 +47,14 @@ class Batch:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class CorrectContext:
+    """What the section that corrects a batch starts with."""
+
+    volume: Batch  # in units of volume, whatever the recipe is stated in
+    choices: tuple[tuple[str, str], ...]  # of a titrant: (value, words)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class HazardRow:
     """A hazard statement and who carries it."""
 
@@ -58,17 +66,30 @@ class HazardRow:
 def batch_of(make_up: MakeUp) -> Batch:
     """Return how much a recipe makes, in the unit that reads best."""
     if make_up.mass is not None:
-        amount, units, quantity = make_up.mass, MASS_UNITS, "mass"
-        text = mass(amount)
-    else:
-        amount, units, quantity = make_up.volume or 0.0, VOLUME_UNITS, "volume"
-        text = volume(amount)
+        return _batch("mass", make_up.mass, make_up.basis)
+    return _batch("volume", make_up.volume or 0.0, make_up.basis)
+
+
+def correct_context(formulation: Formulation, batch: Batch) -> CorrectContext:
+    """Return what the section that corrects a batch starts with: the recipe's own volume."""
+    amount = batch.amount if batch.quantity == "volume" else batch.amount / WATER
+    titrants = enumerate(formulation.titrants)
+    return CorrectContext(
+        volume=_batch("volume", amount, batch.basis),
+        choices=(("", "what fits"), *((str(at), titrant.label) for at, titrant in titrants)),
+    )
+
+
+def _batch(quantity: str, amount: float, basis: str) -> Batch:
+    units, text = (
+        (MASS_UNITS, mass(amount)) if quantity == "mass" else (VOLUME_UNITS, volume(amount))
+    )
     fitting = [unit for unit in units if unit.factor <= amount]
     unit = fitting[-1] if fitting else units[0]
     return Batch(
         quantity=quantity,
         amount=amount,
-        basis=make_up.basis,
+        basis=basis,
         typed=plain(amount / unit.factor, 6),
         unit=unit,
         units=units,
@@ -129,6 +150,7 @@ def hazard_rows(reagents: Sequence[Reagent]) -> tuple[HazardRow, ...]:
     )
 
 
+WATER: Final = 1000.0  # kg/m3, for a volume to start with
 VOLUME_UNITS: Final[tuple[Unit, ...]] = (
     Unit(value="mL", label="mL", factor=1e-6),
     Unit(value="L", label="L", factor=1e-3),

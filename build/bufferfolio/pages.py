@@ -25,6 +25,7 @@ from bufferfolio.reagent_contexts import ReagentRow, reagent_rows
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
 from bufferfolio.sheets import sheet_of
 from bufferfolio.source_contexts import GENERAL_WORKS, HOW_KNOWN, source_rows
+from bufferfolio.tolerances import ASSUMED
 from bufferfolio.writing import replace_folder
 
 Progress = Callable[[str], None]
@@ -92,7 +93,8 @@ def write_site(
             general=GENERAL_WORKS,
         )
         shell = Shell(page="method", section="method", top="", scripts=())
-        writer.write("method.html", "method.html", shell, models=MODELS)
+        assumptions = ASSUMED.values()
+        writer.write("method.html", "method.html", shell, models=MODELS, assumptions=assumptions)
     return reports
 
 
@@ -176,7 +178,9 @@ def write_assets(folder: Path) -> None:
     """Write what pages share: styles, the page's own engine, Bokeh and its empty plots."""
     folder.mkdir()
     templates = resources.templates()
-    style = (templates / "css" / "site.css").read_text(encoding="utf-8")
+    # What holds for every page comes first; what belongs to parts of pages may differ from it.
+    files = sorted((templates / "css").glob("*.css"), key=lambda path: (path.stem != "site", path))
+    style = "".join(path.read_text(encoding="utf-8") for path in files)
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
     for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
@@ -268,6 +272,7 @@ SCRIPTS: Final = (
     "panel_tools",
     "panel_tables",
     "panel_figures",
+    "band_words",
     "panel_copy",
     "panel_judging",
     "panel_dosing",

@@ -19,9 +19,11 @@ from bufferfolio.figures import as_data
 from bufferfolio.formatting import chemical, mass, plain, volume
 from bufferfolio.make_up_contexts import (
     Batch,
+    CorrectContext,
     HazardRow,
     PortionRow,
     batch_of,
+    correct_context,
     hazard_rows,
     portion_rows,
     reagents_of,
@@ -36,6 +38,7 @@ from bufferfolio.page_parts import (
     plot_of,
 )
 from bufferfolio.plots import SHEET_FIGURES
+from bufferfolio.reading_contexts import ReadingContext, reading_context
 from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
@@ -103,8 +106,10 @@ class SheetContext:
     status: str
     status_state: str
     estimate: EstimateWords
+    reading: ReadingContext
     model: ActivityModel
     batch: Batch
+    correct: CorrectContext
     portions: tuple[PortionRow, ...]
     species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
@@ -142,6 +147,9 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
     data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
     data["field"] = field_data(subject, library)
     canonical = json_text(data)
+    fingerprint = hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12]
+    data |= {"revision": formulation.revision, "fingerprint": fingerprint}
+    data |= {"key": formulation.key, "title": formulation.title}
     data["figures"] = {figure.key: as_data(figure) for figure in figures}
     reagents = reagents_of(formulation)
     return SheetContext(
@@ -150,8 +158,10 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         status=STATUS_WORDS[reference.status],
         status_state=reference.status.name.lower().replace("_", "-"),
         estimate=_estimate(sheet),
+        reading=reading_context(subject, reference.temperature),
         model=subject.model,
         batch=batch,
+        correct=correct_context(formulation, batch),
         portions=portions,
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
@@ -162,7 +172,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         hazards=hazard_rows(reagents),
         releases=tuple((item.label, item.releases) for item in reagents if item.releases),
         sources=_sources(constants, pairs, portions),
-        fingerprint=hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12],
+        fingerprint=fingerprint,
         words=_words(formulation, present, reagents),
         lowest_pH=float(np.nanmin(sheet.drift.state.pH)),
         highest_pH=float(np.nanmax(sheet.drift.state.pH)),
