@@ -22,5 +22,5 @@
     return WORDS[kind].replace("{step}", String(step)).replace("{name}", () => name);
   }
 
-  bf.band_words = { contributionWords };
+  bf.band_words = { WORDS, contributionWords };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -39,6 +39,7 @@ ENGINE: Final = (
     "faults",
     "weighing",
     "field_checks",
+    "band_words",
 )
 
 SMALLEST: Final = 1e-12

@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 from playwright.sync_api import Page
 
-from bufferfolio import dosing, judging, measurements, suspects
+from bufferfolio import band_words, dosing, judging, measurements, suspects
 from bufferfolio.definitions import Family
 from bufferfolio.dosing import Batch, corrected
 from bufferfolio.engine_data import setting_data, subject_data
@@ -121,12 +121,15 @@ def test_judgements(engine: Page, key: str) -> None:
     body = """(bf, [data, readings]) => {
       const subject = bf.subjects.subjectOf(data);
       return readings.map(([kelvin, reading, compensation, batch]) =>
-        bf.judging.judged(subject, kelvin, Number(reading), compensation, batch));
+        [null, bf.recipes.withAmounts(subject.recipe, new Map([[0, 0.9]]))].map((recipe) =>
+          bf.judging.judged(subject, kelvin, Number(reading), compensation, batch, recipe)));
     }"""
     asked = [each for kelvin in temperatures(this)[1:2] for each in readings(this, kelvin)]
     found = ask(engine, body, [subject_data(this), plain(asked)])
+    recipes = (None, with_amounts(this.recipe, {0: 0.9} if this.recipe.parts else {}))
     for each, answer in zip(asked, found, strict=True):
-        assert_agrees(answer, plain(judged(this, *each)), LIMIT, f"{key} {each}")
+        expected = [judged(this, *each, recipe) for recipe in recipes]
+        assert_agrees(answer, plain(expected), LIMIT, f"{key} {each}")
 
 
 @pytest.mark.parametrize("key", FORMULATIONS)
@@ -197,8 +200,14 @@ def test_the_error_function(engine: Page) -> None:
 
 def test_words_are_the_same(engine: Page) -> None:
     body = """(bf) => [bf.measurements.REFUSALS, bf.judging.VERDICTS,
-      bf.dosing.REFUSALS, bf.suspects.KINDS]"""
-    expected = [measurements.REFUSALS, judging.VERDICTS, dosing.REFUSALS, suspects.KINDS]
+      bf.dosing.REFUSALS, bf.suspects.KINDS, bf.band_words.WORDS]"""
+    expected = [
+        measurements.REFUSALS,
+        judging.VERDICTS,
+        dosing.REFUSALS,
+        suspects.KINDS,
+        band_words.WORDS,
+    ]
     assert ask(engine, body, None) == plain(expected)
 
 
