@@ -14,6 +14,7 @@ from bufferfolio.dosing import (
     LEAST_CAPACITY,
     MOST_EXCESS,
     NOTHING_TO_DO,
+    REFUSALS,
     Batch,
     corrected,
     dangers_of,
@@ -86,23 +87,22 @@ def _rows(subject: Subject, titrant: int, cases: Sequence[Case]) -> list[DoseRow
     accepted = subject.formulation.accepted_dangers
     if set(dangers_of(subject, titrant)) - set(accepted):
         return [_asked(subject, case) for case in cases]
-    thin, sure = _buffered(subject, cases)
     amounts = _amounts(subject, subject.additions[titrant], cases)
     return [
-        _refused(case, titrant, "dilute")
-        if too_thin
-        else _row(subject, titrant, case, amount)
-        if enough
-        else _asked(subject, case)
-        for case, too_thin, enough, amount in zip(cases, thin, sure, amounts, strict=True)
+        _refused(case, titrant, verdict)
+        if verdict in REFUSALS
+        else _row(subject, titrant, case, amount if verdict == "may" else math.nan)
+        for case, verdict, amount in zip(cases, _verdicts(subject, cases), amounts, strict=True)
     ]
 
 
 def _row(subject: Subject, titrant: int, case: Case, amount: float) -> DoseRow:
     # What may be refused, and where plain repetition does not settle, is asked singly.
     added = subject.additions[titrant]
-    if not amount > LEAST or amount * added.water > MOST_GROWTH:
+    if not amount > LEAST:
         return _asked(subject, case)
+    if amount * added.water > MOST_GROWTH:
+        return _refused(case, titrant, "doubles")
     moles = float(amount) * float(density(np.array(case.temperature)))
     volume = math.nan if added.volume is None else moles * added.volume
     return DoseRow(
@@ -121,18 +121,24 @@ def _refused(case: Case, titrant: int, refusal: str) -> DoseRow:
     )
 
 
-def _buffered(subject: Subject, cases: Sequence[Case]) -> tuple[list[bool], list[bool]]:
-    """Say which batches surely are too dilute to correct, and which surely are not."""
+def _verdicts(subject: Subject, cases: Sequence[Case]) -> list[str]:
+    """Return a key of `REFUSALS`, "may" or, where a bound is near, "ask" for each case."""
     temperature = np.array([case.temperature for case in cases])
     pH = np.array([[case.pH for case in cases], [case.target for case in cases]])
     mixture = scaled(subject.mixture, np.ones(pH.shape))
     constants = constants_at(mixture.families, np.broadcast_to(temperature, pH.shape))
     found = sweep(mixture, constants, subject.model, pH, subject.interactions)
-    capacity = found.capacity.max(axis=0)
-    possible = np.abs(found.base[0]) < MOST_EXCESS / SURE
-    thin = possible & (capacity < LEAST_CAPACITY / SURE)
-    enough = possible & (capacity > LEAST_CAPACITY * SURE)
-    return thin.tolist(), enough.tolist()
+    excess, capacity = np.abs(found.base[0]), found.capacity.max(axis=0)
+    verdicts = np.select(
+        [
+            ~(excess <= MOST_EXCESS),
+            capacity < LEAST_CAPACITY / SURE,
+            capacity > LEAST_CAPACITY * SURE,
+        ],
+        ["impossible", "dilute", "may"],
+        "ask",
+    )
+    return [str(verdict) for verdict in verdicts]
 
 
 def _asked(subject: Subject, case: Case) -> DoseRow:

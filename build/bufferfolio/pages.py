@@ -11,6 +11,7 @@ from jinja2 import Environment, FileSystemLoader, StrictUndefined
 from bufferfolio import resources
 from bufferfolio.activity import MODELS
 from bufferfolio.bokeh_figures import bokeh_script, skeletons_script
+from bufferfolio.card_contexts import card_context
 from bufferfolio.definitions import Library
 from bufferfolio.evidence import compared
 from bufferfolio.evidence_contexts import evidence_context
@@ -138,7 +139,13 @@ def _write_sheets(
         start = time.perf_counter()
         sheet = sheet_of(formulation, library)
         context = sheet_context(sheet, numbers)
-        writer.write(f"formulations/{key}.html", "sheet.html", shell, this=context)
+        writer.write(
+            f"formulations/{key}.html",
+            "sheet.html",
+            shell,
+            this=context,
+            card=card_context(sheet),
+        )
         contexts.append(context)
         expected = formulation.expected
         reports.append(
@@ -176,8 +183,9 @@ def write_assets(folder: Path) -> None:
     """Write what pages share: styles, the page's own engine, Bokeh and its empty plots."""
     folder.mkdir()
     templates = resources.templates()
-    style = (templates / "css" / "site.css").read_text(encoding="utf-8")
-    (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
+    parts = [(templates / "css" / name).read_text(encoding="utf-8") for name in STYLES]
+    style = "".join([*parts, stylesheet()])
+    (folder / "site.css").write_text(style, encoding="utf-8", newline="\n")
     for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
         (folder / f"{name}.js").write_text(script, encoding="utf-8", newline="\n")
@@ -217,6 +225,8 @@ SECTIONS: Final = (
     Section(key="evidence", label="Evidence", path="evidence.html"),
     Section(key="method", label="Method", path="method.html"),
 )
+
+STYLES: Final = ("site.css", "print.css")
 
 # Each after those that it needs as soon as it is read.
 SCRIPTS: Final = (
