@@ -7,10 +7,12 @@ from typing import Final
 
 from markupsafe import Markup
 
+from bufferfolio.card_room import BLOCKS, lines_of, room_for_log, room_for_readings
 from bufferfolio.cards import FIRST, Card, Correction, Reading, card_of
 from bufferfolio.definitions import Formulation
 from bufferfolio.dosing import LEAST_MASS, LEAST_VOLUME
 from bufferfolio.formatting import celsius, fixed, mass, plain, sentence, significant, volume
+from bufferfolio.make_up_contexts import grade_of, hazard_rows, reagents_of
 from bufferfolio.plots import drift_figure, titration_figure
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.svg_figures import card_svg
@@ -75,16 +77,18 @@ class CardContext:
     differ: str  # per cent, at most, of doses over the temperatures of use; "": no doses
     falls: bool  # whether the first portion may be too much at another temperature
     pictures: tuple[Picture, ...]
-    log_lines: int
+    gases: str  # what stands before what may be set free
+    log_lines: int  # to write on
 
 
 def card_context(sheet: Sheet) -> CardContext:
     """Return what the card of a formulation says, in as many lines as its two pages have room."""
     formulation = sheet.subject.formulation
-    card = card_of(sheet.subject, _room(formulation), MOST_CORRECTIONS)
+    card = card_of(sheet.subject, _room(sheet), MOST_CORRECTIONS)
     expected = formulation.expected
     rows = tuple(_reading_row(sheet, card, reading) for reading in card.readings)
     figures = (drift_figure(sheet), titration_figure(sheet))
+    sides = tuple(_side(sheet, card, high) for high in (True, False))
     return CardContext(
         at=celsius(card.temperature),
         target=fixed(card.target, 2),
@@ -94,7 +98,7 @@ def card_context(sheet: Sheet) -> CardContext:
         outside=any(row.outside for row in rows),
         batches=tuple(_batch(formulation, share) for share in SHARES),
         usual=SHARES.index(1.0),
-        sides=tuple(_side(sheet, card, high) for high in (True, False)),
+        sides=sides,
         differ=_at_most(card.spread),
         falls=card.fall > 1.0 - FIRST,
         pictures=tuple(
@@ -102,15 +106,33 @@ def card_context(sheet: Sheet) -> CardContext:
             for figure in figures
             if figure is not None and figure.series
         ),
-        log_lines=LOG_LINES,
+        gases=GASES,
+        log_lines=room_for_log(
+            max(len(side.lines) for side in sides),
+            max(_words_beside(side) for side in sides),
+            pictures=True,
+        ),
     )
 
 
-def _room(formulation: Formulation) -> int:
+def _room(sheet: Sheet) -> int:
     """Return how many readings the first page has room for beside recipe and cautions."""
-    lines = sum(1 + len(caution) // CAUTION_WIDTH for caution in formulation.cautions)
-    lines += math.ceil(1.3 * len(formulation.make_up.portions))
-    return max(LEAST_READINGS, BLOCKS * (PAGE_LINES - lines))
+    formulation = sheet.subject.formulation
+    reagents = reagents_of(formulation)
+    recipe = [
+        f"{portion.reagent.label} {portion.reagent.formula} {grade_of(portion.reagent)}"
+        for portion in formulation.make_up.portions
+    ]
+    releases = [f"{GASES} {each.label}: {'; '.join(each.releases)}" for each in reagents]
+    freed = [text for text, each in zip(releases, reagents, strict=True) if each.releases]
+    hazards = "; ".join(f"{row.code} {row.words}" for row in hazard_rows(reagents))
+    return room_for_readings(
+        formulation.title,
+        formulation.purpose,
+        recipe,
+        [*freed, *formulation.cautions],
+        [text for text in ("; ".join(sheet.warnings), hazards) if text],
+    )
 
 
 def _reading_row(sheet: Sheet, card: Card, reading: Reading) -> ReadingRow:
@@ -167,29 +189,42 @@ def _side(sheet: Sheet, card: Card, high: bool) -> CardSide:
     )
 
 
+def _words_beside(side: CardSide) -> int:
+    """Return how many lines the words around one table of doses take."""
+    note = " ".join([side.titrant, *side.hazards]) if side.hazards else ""
+    words = [f"Too high: add {side.titrant}", side.refusal, note, side.reserve]
+    return sum(lines_of(text, HALF_WIDTH) for text in words if text)
+
+
 def _lines(card: Card, own: Sequence[Correction]) -> tuple[DoseLine, ...]:
-    columns = [_portions(own, share) for share in SHARES]
+    unit, size, least = _unit(own)
     return tuple(
         DoseLine(
-            distance=plain(abs(each.distance)),
+            distance=fixed(abs(each.distance), 2),
             reads=fixed(card.target + each.distance, 2),
-            portions=() if each.dose.refusal else tuple(column[at] for column in columns),
+            portions=()
+            if each.dose.refusal
+            else tuple(_portion(share * each.first, unit, size, least) for share in SHARES),
             refusal=WORDS.get(each.dose.refusal, "make anew") if each.dose.refusal else "",
         )
-        for at, each in enumerate(own)
+        for each in own
     )
 
 
-def _portions(own: Sequence[Correction], share: float) -> list[str]:
-    """Return one column of first portions, all in one unit, so that none is read for another."""
-    first = [share * each.first for each in own]
+def _unit(own: Sequence[Correction]) -> tuple[str, float, float]:
+    """Return one unit for a whole table, so that no portion is read for a thousand times it.
+
+    With it come its size and the least that can be measured out, in m3 or, of a solid, in kg.
+    """
     liquid = any(math.isfinite(each.dose.volume) for each in own)
     units, least = (VOLUMES, LEAST_VOLUME) if liquid else (MASSES, LEAST_MASS)
-    smallest = min(each for each in first if math.isfinite(each))
+    smallest = min(SHARES) * min(each.first for each in own if math.isfinite(each.first))
     name, size = next((each for each in units if smallest >= 0.1 * each[1]), units[-1])
-    return [
-        "too little" if each < least else f"{_two_figures(each / size)} {name}" for each in first
-    ]
+    return name, size, least
+
+
+def _portion(amount: float, unit: str, size: float, least: float) -> str:
+    return "too little" if amount < least else f"{_two_figures(amount / size)} {unit}"
 
 
 def _two_figures(value: float) -> str:
@@ -238,11 +273,8 @@ MASSES: Final = (("kg", 1.0), ("g", 1e-3), ("mg", 1e-6))
 ROUND: Final = (1.0, 2.0, 5.0, 10.0, 15.0, 20.0, 25.0, 30.0, 40.0, 50.0, 75.0, 100.0)
 
 MOST_CORRECTIONS: Final = 8  # lines a side
-LOG_LINES: Final = 5
-BLOCKS: Final = 2  # of readings, side by side
-LEAST_READINGS: Final = 12
-PAGE_LINES: Final = 31  # that a first page on Letter holds of recipe, readings and cautions
-CAUTION_WIDTH: Final = 105  # letters in a line
+HALF_WIDTH: Final = 44  # letters across half a page
+GASES: Final = "May set gas free."
 
 WORDS: Final[Mapping[str, str]] = {
     "impossible": "check the electrode",

@@ -27,7 +27,7 @@ from bufferfolio.line_paths import Box, Path, Point
 SMALL_WIDTH, SMALL_TALL = 160, 100
 SMALL_FRAME = Box(4.0, 4.0, 156.0, 96.0)
 CARD_WIDTH, CARD_TALL = 340, 172  # at 90 mm its 14 px text is 10.5 pt
-CARD_FRAME = Box(44.0, 24.0, 334.0, 130.0)
+CARD_FRAME = Box(44.0, 24.0, 322.0, 130.0)
 TICKS, CARD_TICKS = (9, 7), (6, 5)  # at most, across and along
 CIRCLE = "a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0"  # around a point, from its left end
 RADIUS = 2.5
