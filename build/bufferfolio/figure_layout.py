@@ -77,16 +77,16 @@ def series_paths(figure: Figure, series: Series, frame: Box) -> list[Path]:
     return [simplified(path) for path in clipped(points, frame)]
 
 
-def lines_layout(figure: Figure) -> Lines:
+def lines_layout(figure: Figure, frame: Box = FRAME) -> Lines:
     """Return the visible lines of a figure, and its marks' and lines' words where they fit."""
     visible = [each for each in figure.series if each.visible]
-    paths = tuple(series_paths(figure, each, FRAME) for each in visible)
-    profiles = [profile(each, FRAME) for each in paths]
-    words = mark_words(figure, profiles)
+    paths = tuple(series_paths(figure, each, frame) for each in visible)
+    profiles = [profile(each, frame) for each in paths]
+    words = mark_words(figure, profiles, frame)
     for at, each in enumerate(visible):
         others = [*profiles[:at], *profiles[at + 1 :]]
-        taken = [*mark_boxes(figure), *(word.box for word in words)]
-        box = line_place(each.label, profiles[at], others, taken, FRAME)
+        taken = [*mark_boxes(figure, frame), *(word.box for word in words)]
+        box = line_place(each.label, profiles[at], others, taken, frame)
         if box is not None:
             words.append(Word(each.label, box, f"halo name t{each.style % len(STYLES)}"))
     return Lines(paths, tuple(words))
@@ -125,52 +125,52 @@ def _lattice(figure: Figure, cells: Cells) -> contours.Lattice:
     )
 
 
-def mark_words(figure: Figure, profiles: Sequence[Profile]) -> list[Word]:
+def mark_words(figure: Figure, profiles: Sequence[Profile], frame: Box = FRAME) -> list[Word]:
     """Return the words of marks across an axis."""
     words: list[Word] = []
     for mark in figure.marks:
-        at = mark_position(figure, mark)
+        at = mark_position(figure, mark, frame)
         if at is None:
             continue
         taken = [*mark_boxes(figure), *(word.box for word in words)]
-        box = mark_place(_mark_choices(mark, at), profiles, taken, FRAME)
+        box = mark_place(_mark_choices(mark, at, frame), profiles, taken, frame)
         if box is not None:
             words.append(Word(mark.label, box, "halo"))
     return words
 
 
-def mark_boxes(figure: Figure) -> list[Box]:
+def mark_boxes(figure: Figure, frame: Box = FRAME) -> list[Box]:
     """Return the hairlines of marks as boxes that no word should cross."""
     boxes = []
     for mark in figure.marks:
-        at = mark_position(figure, mark)
+        at = mark_position(figure, mark, frame)
         if at is not None and mark.axis == "x":
-            boxes.append(Box(at, FRAME.top, at, FRAME.bottom))
+            boxes.append(Box(at, frame.top, at, frame.bottom))
         elif at is not None:
-            boxes.append(Box(FRAME.left, at, FRAME.right, at))
+            boxes.append(Box(frame.left, at, frame.right, at))
     return boxes
 
 
-def mark_position(figure: Figure, mark: Mark) -> float | None:
+def mark_position(figure: Figure, mark: Mark, frame: Box = FRAME) -> float | None:
     """Return where a mark crosses its axis, in px; None outside the frame or on no axis."""
     if mark.axis == "x":
-        at = across(figure.x, mark.value, FRAME.left, FRAME.right)
-        return at if FRAME.left <= at <= FRAME.right else None
+        at = across(figure.x, mark.value, frame.left, frame.right)
+        return at if frame.left <= at <= frame.right else None
     if mark.axis == "y":
-        at = across(figure.y, mark.value, FRAME.bottom, FRAME.top)
-        return at if FRAME.top <= at <= FRAME.bottom else None
+        at = across(figure.y, mark.value, frame.bottom, frame.top)
+        return at if frame.top <= at <= frame.bottom else None
     return None
 
 
-def _mark_choices(mark: Mark, at: float) -> list[Box]:
+def _mark_choices(mark: Mark, at: float, frame: Box) -> list[Box]:
     width = text_width(mark.label)
     if mark.axis == "y":
-        lefts = [FRAME.right - 6 - width, FRAME.left + 6]
-        lefts += [FRAME.left + part * (FRAME.right - FRAME.left) / 8 for part in (2, 4, 1, 3)]
+        lefts = [frame.right - 6 - width, frame.left + 6]
+        lefts += [frame.left + part * (frame.right - frame.left) / 8 for part in (2, 4, 1, 3)]
         tops = [at - 3 - HEIGHT, at + 3]
         return [Box(left, top, left + width, top + HEIGHT) for left in lefts for top in tops]
-    rows = [FRAME.top + 4 + row * HEIGHT for row in range(4)]
-    rows += [FRAME.bottom - 6 - (row + 1) * HEIGHT for row in range(12)]
+    rows = [frame.top + 4 + row * HEIGHT for row in range(4)]
+    rows += [frame.bottom - 6 - (row + 1) * HEIGHT for row in range(12)]
     return [
         Box(left, top, left + width, top + HEIGHT)
         for top in rows

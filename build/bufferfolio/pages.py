@@ -11,6 +11,7 @@ from jinja2 import Environment, FileSystemLoader, StrictUndefined
 from bufferfolio import resources
 from bufferfolio.activity import MODELS
 from bufferfolio.bokeh_figures import bokeh_script, skeletons_script
+from bufferfolio.card_contexts import card_context
 from bufferfolio.definitions import Library
 from bufferfolio.evidence import compared
 from bufferfolio.evidence_contexts import evidence_context
@@ -140,7 +141,13 @@ def _write_sheets(
         start = time.perf_counter()
         sheet = sheet_of(formulation, library)
         context = sheet_context(sheet, library, numbers)
-        writer.write(f"formulations/{key}.html", "sheet.html", shell, this=context)
+        writer.write(
+            f"formulations/{key}.html",
+            "sheet.html",
+            shell,
+            this=context,
+            card=card_context(sheet),
+        )
         contexts.append(context)
         expected = formulation.expected
         reports.append(

@@ -26,6 +26,9 @@ from bufferfolio.line_paths import Box, Path, Point
 
 SMALL_WIDTH, SMALL_TALL = 160, 100
 SMALL_FRAME = Box(4.0, 4.0, 156.0, 96.0)
+CARD_WIDTH, CARD_TALL = 340, 172  # at 90 mm its 14 px text is 10.5 pt
+CARD_FRAME = Box(44.0, 24.0, 322.0, 130.0)
+TICKS, CARD_TICKS = (9, 7), (6, 5)  # at most, across and along
 CIRCLE = "a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0"  # around a point, from its left end
 RADIUS = 2.5
 BASELINE = 10.5  # px from a text box's top to the text's baseline
@@ -45,6 +48,17 @@ def svg(figure: Figure) -> str:
     )
 
 
+def card_svg(figure: Figure) -> str:
+    """Return a figure of lines as a printed card shows it, where its words are not too small."""
+    figure = rounded(figure)
+    words = f"{figure.title}. {figure.summary}"
+    return (
+        f'<svg class="figure" viewBox="0 0 {CARD_WIDTH} {CARD_TALL}" role="img" '
+        f'aria-label="{escaped(words)}">{_lines(figure, CARD_FRAME)}'
+        f"{_axes(figure, CARD_FRAME, CARD_TICKS)}</svg>"
+    )
+
+
 def thumbnail(figure: Figure) -> str:
     """Return the lines of a figure as a small SVG element without any words inside."""
     figure = rounded(figure)
@@ -59,11 +73,11 @@ def thumbnail(figure: Figure) -> str:
     )
 
 
-def _lines(figure: Figure) -> str:
-    inside = lines_layout(figure)
+def _lines(figure: Figure, frame: Box = FRAME) -> str:
+    inside = lines_layout(figure, frame)
     visible = [each for each in figure.series if each.visible]
     drawn = [_series(each, paths) for each, paths in zip(visible, inside.paths, strict=True)]
-    return _marks(figure) + "".join(drawn) + _words(inside.words)
+    return _marks(figure, frame) + "".join(drawn) + _words(inside.words)
 
 
 def _map(figure: Figure, cells: Cells) -> str:
@@ -104,14 +118,14 @@ def swatch(style: int) -> str:
     return f'<svg class="figure swatch spot" viewBox="0 0 14 14" aria-hidden="true">{drawn}</svg>'
 
 
-def _marks(figure: Figure) -> str:
+def _marks(figure: Figure, frame: Box = FRAME) -> str:
     drawn = ""
     for mark in figure.marks:
-        at = mark_position(figure, mark)
+        at = mark_position(figure, mark, frame)
         if at is not None and mark.axis == "x":
-            drawn += f"M{tenths(at)} {tenths(FRAME.top)}V{tenths(FRAME.bottom)}"
+            drawn += f"M{tenths(at)} {tenths(frame.top)}V{tenths(frame.bottom)}"
         elif at is not None:
-            drawn += f"M{tenths(FRAME.left)} {tenths(at)}H{tenths(FRAME.right)}"
+            drawn += f"M{tenths(frame.left)} {tenths(at)}H{tenths(frame.right)}"
     return _path("mark", drawn)
 
 
@@ -121,20 +135,20 @@ def _words(words: Sequence[Word]) -> str:
     )
 
 
-def _axes(figure: Figure) -> str:
+def _axes(figure: Figure, frame: Box = FRAME, most: tuple[int, int] = TICKS) -> str:
     drawn = ""
     words = []
-    for each in ticks(figure.x.low, figure.x.high, figure.x.scale, 9):
-        at = across(figure.x, each.value, FRAME.left, FRAME.right)
-        drawn += f"M{tenths(at)} {tenths(FRAME.bottom)}v-5"
-        words.append(_text(at, FRAME.bottom + 17, "c", each.text))
-    for each in ticks(figure.y.low, figure.y.high, figure.y.scale, 7):
-        at = across(figure.y, each.value, FRAME.bottom, FRAME.top)
-        drawn += f"M{tenths(FRAME.left)} {tenths(at)}h5"
-        words.append(_text(FRAME.left - 6, at + 5, "n", each.text))
-    words.append(_text(FRAME.right, TALL - 10.0, "n", figure.x.title))
-    words.append(_text(8.0, 18.0, "", figure.y.title))
-    return _frame(FRAME) + _path("frame", drawn) + "".join(words)
+    for each in ticks(figure.x.low, figure.x.high, figure.x.scale, most[0]):
+        at = across(figure.x, each.value, frame.left, frame.right)
+        drawn += f"M{tenths(at)} {tenths(frame.bottom)}v-5"
+        words.append(_text(at, frame.bottom + 17, "c", each.text))
+    for each in ticks(figure.y.low, figure.y.high, figure.y.scale, most[1]):
+        at = across(figure.y, each.value, frame.bottom, frame.top)
+        drawn += f"M{tenths(frame.left)} {tenths(at)}h5"
+        words.append(_text(frame.left - 6, at + 5, "n", each.text))
+    words.append(_text(frame.right, frame.bottom + 36.0, "n", figure.x.title))
+    words.append(_text(8.0, frame.top - 12.0, "", figure.y.title))
+    return _frame(frame) + _path("frame", drawn) + "".join(words)
 
 
 def _frame(frame: Box) -> str:

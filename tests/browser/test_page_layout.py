@@ -95,8 +95,8 @@ def test_the_engine_starts_with_the_numbers_of_the_build(
     context.close()
 
 
-def test_a_sheet_prints_its_pictures_and_no_controls(page: Page, site: Path) -> None:
-    page.goto((site / "formulations" / "tris-assay.html").as_uri())
+def test_an_explorer_prints_its_pictures_and_no_controls(page: Page, site: Path) -> None:
+    page.goto((site / "families" / "phosphate.html").as_uri())
     page.emulate_media(media="print")
     assert page.locator(".plot-picture > svg").first.is_visible()
     for hidden in ["nav", ".controls", ".plot-tools", ".numbers"]:
