@@ -14,14 +14,16 @@ from bufferfolio.composition import pure_water
 from bufferfolio.definitions import Family, Formulation, Library, Reagent
 from bufferfolio.engine_data import sheet_data
 from bufferfolio.equilibrium import Status
-from bufferfolio.field_data import field_data
+from bufferfolio.field_data import field_data, ways_to
 from bufferfolio.figures import as_data
 from bufferfolio.formatting import chemical, mass, plain, volume
 from bufferfolio.make_up_contexts import (
     Batch,
+    Bench,
     HazardRow,
     PortionRow,
     batch_of,
+    bench_of,
     hazard_rows,
     portion_rows,
     reagents_of,
@@ -106,6 +108,7 @@ class SheetContext:
     model: ActivityModel
     batch: Batch
     portions: tuple[PortionRow, ...]
+    bench: Bench
     species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
     sides: tuple[SideRow, ...]
@@ -140,8 +143,11 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
     batch = batch_of(formulation.make_up)
     data = sheet_data(sheet)
     data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
-    data["field"] = field_data(subject, library)
+    routes = ways_to(subject, library)
+    bench = bench_of(subject, library, routes)
+    data["field"] = field_data(subject, library, routes)
     canonical = json_text(data)
+    data["shelf"] = bench.shelf
     data["figures"] = {figure.key: as_data(figure) for figure in figures}
     reagents = reagents_of(formulation)
     return SheetContext(
@@ -153,6 +159,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         model=subject.model,
         batch=batch,
         portions=portions,
+        bench=bench,
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
         sides=tuple(_side(sheet, side) for side in sheet.sides),
