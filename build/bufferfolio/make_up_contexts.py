@@ -72,6 +72,7 @@ class Bench:
     cylinders: tuple[Step, ...]
     ways: tuple[str, ...]  # the recipe first
     rows: int  # reagents of the way that has most
+    forms: int  # of the reagent that has most
     order: tuple[tuple[str, str], ...]
     advice: tuple[str, ...]
     shelf: Data  # what the page says of the reagents of all ways
@@ -159,6 +160,7 @@ def bench_of(subject: Subject, library: Library, routes: Sequence[Route]) -> Ben
         cylinders=tuple(replace(step, chosen=step == cylinder) for step in CYLINDERS),
         ways=way_labels([route.recipe for route in routes]),
         rows=max(len(route.recipe.parts) for route in routes),
+        forms=1 + max((len(each) for route in routes for each in route.instead), default=0),
         order=order_words(recipe),
         advice=adjustment_words(
             adjustment_of(subject),

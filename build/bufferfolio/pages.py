@@ -176,7 +176,9 @@ def write_assets(folder: Path) -> None:
     """Write what pages share: styles, the page's own engine, Bokeh and its empty plots."""
     folder.mkdir()
     templates = resources.templates()
-    style = (templates / "css" / "site.css").read_text(encoding="utf-8")
+    first = templates / "css" / "site.css"
+    others = sorted(path for path in first.parent.glob("*.css") if path != first)
+    style = "".join(path.read_text(encoding="utf-8") for path in (first, *others))
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
     for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
@@ -244,6 +246,7 @@ SCRIPTS: Final = (
     "suspects",
     "faults",
     "weighing",
+    "weighed_batch",
     "field_checks",
     "sheets",
     "explorations",
@@ -260,6 +263,7 @@ SCRIPTS: Final = (
     "figure_csv",
     "plots",
     "explorer_plots",
+    "make_up_words",
     "panel_state",
     "panel_checks",
     "panel_inputs",
@@ -271,6 +275,7 @@ SCRIPTS: Final = (
     "panel_copy",
     "panel_judging",
     "panel_dosing",
+    "panel_make_up",
     "panel_field",
     "panel",
 )
