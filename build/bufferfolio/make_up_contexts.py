@@ -167,7 +167,10 @@ def bench_of(subject: Subject, library: Library, routes: Sequence[Route]) -> Ben
             None if expected is None else expected.tolerance,
             can_be_set=bool(formulation.titrants),
         ),
-        shelf=shelf_data(routes, library),
+        shelf={
+            **shelf_data(routes, library),
+            "stated": [portion.stated for portion in formulation.make_up.portions],
+        },
     )
 
 

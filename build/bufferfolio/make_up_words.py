@@ -28,7 +28,8 @@ def adjustment_words(
     `tolerance` as the formulation's file states it; `can_be_set`: whether it names a titrant.
     """
     made, used = (
-        f"{celsius(kelvin)} °C" for kelvin in (advice.temperature, advice.reference_temperature)
+        f"{celsius(kelvin)}{FIRM}°C"
+        for kelvin in (advice.temperature, advice.reference_temperature)
     )
     pH, aim = fixed(advice.pH, 2), fixed(advice.reference_pH, 2)
     verb = "set it to" if can_be_set else "it should read"
@@ -36,9 +37,9 @@ def adjustment_words(
         return (f"At {used}, for which its pH is stated, {verb} pH {aim}.", _drift(advice.slope))
     wrong = fixed(advice.mistaken, 2)
     edge = (
-        f"± {plain(USUAL_TOLERANCE)} (no tolerance is stated)"
+        f"±{FIRM}{plain(USUAL_TOLERANCE)} (no tolerance is stated)"
         if tolerance is None
-        else f"the tolerance of ± {plain(tolerance)}"
+        else f"the tolerance of ±{FIRM}{plain(tolerance)}"
     )
     side = "outside" if advice.matters else "inside"
     lines = (
@@ -66,6 +67,7 @@ def way_labels(recipes: Sequence[Recipe]) -> tuple[str, ...]:
     return tuple(labels)
 
 
+FIRM: Final = "\N{NO-BREAK SPACE}"
 SAME: Final = 0.5  # K: closer temperatures are one
 FLAT: Final = 5e-4  # 1/K: less is lost in rounding
 PATIENCE: Final = "Let it come to {}, or set it to the value for the temperature that it has."

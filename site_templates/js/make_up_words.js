@@ -15,21 +15,32 @@
   const { mixtureOf } = bf.recipes;
   const { stateAt, solvedAt } = bf.subjects;
 
+  const FIRM = "\u00a0"; // a space at which no line ends
   const USUAL_TOLERANCE = 0.05; // in pH, where no tolerance is stated
   const SAME = 0.5; // K: closer temperatures are one
   const FLAT = 5e-4; // 1/K: less is lost in rounding
   const SEEN = 5e-5; // relative: what is rounded by less is not worth a word
+  /** @type {Record<string, string>} */
+  const GOING_BY = {
+    "by the recipe": "Judging and correcting go by the recipe.",
+    "other reagents": "Judging and correcting now go by the reagents that are chosen here.",
+    "as weighed": "Judging and correcting now go by what was weighed and measured out.",
+  };
   const VISIBLE = 0.005; // in pH: what shows on a meter
 
   /** One line for each part of the batch.
    * @param {Batch} batch
    * @param {Subject} subject
    * @param {Record<string, number>} values
+   * @param {object} data the page's data block
    * @returns {WeighRow[]}
    */
-  function rowsOf(batch, subject, values) {
+  function rowsOf(batch, subject, values, data) {
+    const { amount, quantity } = data.batch;
+    const size = quantity === "mass" ? mass(amount) : volume(amount);
     const found = weighings(batch.planned, values.balance, values.cylinder);
-    return found.map(({ part, wanted, rounded, error }) => {
+    return found.map(({ part, wanted, rounded, error }, at) => {
+      const own = batch.route === 0 && part.key === subject.recipe.parts[at].key;
       const solid = part.added.volume === null;
       const step = solid ? values.balance : values.cylinder;
       const unit = bf.weighed_batch.unitOf(part, values);
@@ -38,7 +49,7 @@
       return {
         label: part.label,
         key: part.key,
-        says: written(wanted / batch.factor),
+        says: own ? data.shelf.stated[at] : written(wanted / batch.factor) + " for " + size,
         amount: written(wanted),
         out: fixed(rounded / unit.factor, decimals) + " " + unit.label,
         unit: unit.label,
@@ -57,8 +68,8 @@
   function tooLittle(solid, half, care) {
     const allowed = solid ? care.weighing : care.volume;
     if (half <= allowed) return "";
-    const share = half > 1 ? "more than all" : significant(100 * half, 2) + " %";
-    const limit = plain(100 * allowed) + " %";
+    const share = half > 1 ? "more than all" : significant(100 * half, 2) + FIRM + "%";
+    const limit = plain(100 * allowed) + FIRM + "%";
     const about = " is " + share + " of the amount, and " + limit + " is allowed. ";
     return solid
       ? "Too little to weigh on this balance: half a step of it" + about
@@ -98,8 +109,8 @@
     }
     const wrong = fixed(advice.mistaken, 2);
     const edge = tolerance === null
-      ? "± " + plain(USUAL_TOLERANCE) + " (no tolerance is stated)"
-      : "the tolerance of ± " + plain(tolerance);
+      ? "±" + FIRM + plain(USUAL_TOLERANCE) + " (no tolerance is stated)"
+      : "the tolerance of ±" + FIRM + plain(tolerance);
     const side = advice.matters ? "outside" : "inside";
     const lines = [
       "At " + made + " " + verb + " pH " + pH + ": at " + used + " it then reads " + aim + ".",
@@ -123,10 +134,10 @@
 
   /** @param {number} kelvin @param {string} unit @returns {string} */
   function degrees(kelvin, unit) {
-    if (unit !== "F") return celsius(kelvin) + " °C";
+    if (unit !== "F") return celsius(kelvin) + FIRM + "°C";
     const { degreesIn } = bf.panel_state;
     return String(Number(degreesIn(Number(celsius(kelvin).replace("−", "-")), "F").toFixed(1)))
-      .replace("-", "−") + " °F";
+      .replace("-", "−") + FIRM + "°F";
   }
 
   /** How a way differs from the recipe. @param {[string, number][]} differences
@@ -167,11 +178,13 @@
 
   /** What judging and correcting go by. @param {Batch} batch @returns {string} */
   function goingBy(batch) {
-    if (batch.own) return "Judging and correcting go by the recipe.";
-    if (batch.taken.size === 0 && batch.water === null) {
-      return "Judging and correcting now go by the reagents that are chosen here.";
-    }
-    return "Judging and correcting now go by what was weighed and measured out.";
+    return GOING_BY[madeWords(batch)];
+  }
+
+  /** @param {Batch} batch @returns {string} for a column of a log */
+  function madeWords(batch) {
+    if (batch.own) return "by the recipe";
+    return batch.taken.size === 0 && batch.water === null ? "other reagents" : "as weighed";
   }
 
   /** The expected reading in words, and whether it will do.
@@ -180,10 +193,10 @@
    * @returns {{reading: string, than: string, state: string, verdict: string}}
    */
   function outlookWords({ band, own, target, tolerance }, at) {
-    const reading = "pH " + fixed(band.pH, 2) + " ± " + fixed(band.half_width, 2) + " at " + at;
+    const reading = "pH" + FIRM + about(band.pH, fixed(band.half_width, 2)) + " at " + at;
     const difference = band.pH - own.pH;
     const than = Math.abs(difference) < VISIBLE
-      ? "As by the recipe."
+      ? "The same as by the recipe."
       : fixed(Math.abs(difference), 2) + (difference > 0 ? " above" : " below")
         + " what the recipe gives, " + fixed(own.pH, 2) + ".";
     if (!Number.isFinite(band.pH)) {
@@ -193,11 +206,16 @@
       return { reading, than, state: "open", verdict: "No tolerance is stated." };
     }
     const inside = Math.abs(band.pH - target) <= tolerance + 1e-9;
-    const about = "the tolerance, " + fixed(target, 2) + " ± " + plain(tolerance) + ".";
+    const limits = "the tolerance, " + about(target, plain(tolerance)) + ".";
     return {
       reading, than, state: inside ? "right" : "off",
-      verdict: (inside ? "Inside " : "Outside ") + about,
+      verdict: (inside ? "✓ Inside " : "✗ Outside ") + limits,
     };
+  }
+
+  /** @param {number} pH @param {string} width @returns {string} */
+  function about(pH, width) {
+    return fixed(pH, 2) + FIRM + "±" + FIRM + width;
   }
 
   /** What rounding to the displays does; "" where no meter shows it.
@@ -224,7 +242,8 @@
     const off = taken / wanted - 1;
     if (Math.abs(off) < SEEN) return "as asked for";
     const far = off > 1 || off < -0.5 ? ". Is it for this batch?" : "";
-    return signed(100 * off, Math.abs(off) < 0.01 ? 2 : 1) + " %" + far;
+    const decimals = [0.01, 1].filter((limit) => Math.abs(off) < limit).length;
+    return signed(100 * off, decimals) + " %" + far;
   }
 
   /** What is to be minded about a reagent: handling, gases, hazard statements spelled out.
@@ -244,7 +263,7 @@
   }
 
   bf.make_up_words = {
-    rowsOf, orderWords, adjustmentWords, degrees, differenceWords, outlookOf, goingBy,
+    rowsOf, orderWords, adjustmentWords, degrees, differenceWords, outlookOf, madeWords, goingBy,
     outlookWords, roundingWords, factWords, offWords, handlingWords,
   };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -5,8 +5,6 @@
 
   const { numberOf } = bf.panel_state;
 
-  const MARKS = { recipe: "○", open: "●", right: "✓", off: "✗" };
-
   /** @param {object} data the page's data block
    * @returns {Section | null} */
   function open(data) {
@@ -31,15 +29,15 @@
       batch: null,
       lines: [],
     };
-    for (const place of document.querySelectorAll(
-      "[data-make-up], [data-order], [data-advice], [data-handling]")) place.hidden = false;
+    const section = root.closest("section");
+    for (const place of section.querySelectorAll("[data-opens]")) place.hidden = false;
     listen(view);
     bf.panel_copy.open(root.querySelector("[data-make-up-copy]"), () => view.lines);
     return { name: "make_up", late: false, answer: (situation) => answer(view, situation) };
   }
 
-  /** What was typed for one reagent must not count for another, nor in another unit. These listeners
-   * come before those of `panel_inputs`, which then read what is left. */
+  /** What was typed for one reagent must not count for another, nor in another unit. These
+   * listeners come before those of `panel_inputs`, which then read what is left. */
   function listen(view) {
     const fields = [...view.rows.map((row) => row.field), view.waterField];
     if (view.route !== null) {
@@ -96,7 +94,7 @@
     const made = view.root.querySelector("[data-made]");
     const own = [...view.rows.map((_, at) => "weighed-" + at), "weighed-water"];
     const faulty = own.some((name) => faults.has(name));
-    const rows = words.rowsOf(batch, subject, values);
+    const rows = words.rowsOf(batch, subject, values, data);
     view.batch = batch;
     view.rows.forEach((row, at) => showRow(view, row, at, batch, rows[at], values));
     const water = showWater(view, batch, situation);
@@ -106,12 +104,10 @@
     const outlook = words.outlookOf(batch, subject, temperature, values);
     if (!faulty) showMade(view, batch, outlook, at);
     showList(document.querySelector("[data-order]"), words.orderWords(batch.planned));
-    showList(document.querySelector("[data-advice]"), adviceOf(situation).map((line) => ["", line]));
+    const advice = adviceOf(situation).map((line) => ["", line]);
+    showList(document.querySelector("[data-advice]"), advice);
     view.lines = linesOf(view, batch, rows, water, words.outlookWords(outlook, at));
-    return {
-      lines: view.lines,
-      facts: { batch: water, made: batch.own ? "by the recipe" : view.lines[view.lines.length - 1] },
-    };
+    return { lines: view.lines, facts: { batch: water, made: words.madeWords(batch) } };
   }
 
   /** @param {Situation} situation @returns {string[]} */
@@ -136,6 +132,7 @@
     write(row.amount, words.amount);
     write(row.part("out"), words.out);
     write(row.part("rounding"), words.rounding);
+    row.part("outCell").dataset.label = part.added.volume === null ? "Weigh out" : "Measure out";
     write(row.part("unit"), words.unit);
     write(row.part("warning"), words.warning);
     row.part("warning").hidden = words.warning === "";
@@ -201,7 +198,7 @@
     const told = words.outlookWords(outlook, at);
     const state = batch.own ? "recipe" : told.state;
     place("made").dataset.state = state;
-    write(place("mark"), MARKS[state]);
+    write(place("mark"), batch.own ? "○" : "●");
     write(place("going-by"), words.goingBy(batch));
     place("outlook").hidden = batch.own;
     place("make-up-back").hidden = batch.own;
@@ -215,7 +212,8 @@
   function linesOf(view, batch, rows, water, told) {
     const taken = rows.map(({ label, out, unit }, at) => {
       const text = view.rows[at].field.value.trim();
-      return label + ": " + out + (batch.taken.has(at) ? " (taken: " + text + " " + unit + ")" : "");
+      const really = batch.taken.has(at) ? " (taken: " + text + " " + unit + ")" : "";
+      return label + ": " + out + really;
     });
     const unit = view.water.querySelector('[data-part="unit"]').textContent;
     const made = batch.water === null ? ""
