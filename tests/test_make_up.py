@@ -1,6 +1,7 @@
 """What a sheet says of making a batch up: amounts, steps, words, and what stands on the shelf."""
 
 import math
+from functools import cache
 
 import numpy as np
 import pytest
@@ -16,6 +17,7 @@ from bufferfolio.make_up_contexts import (
 )
 from bufferfolio.make_up_words import adjustment_words, order_words, way_labels
 from bufferfolio.recipes import measure_of
+from bufferfolio.routes import Route
 from bufferfolio.subjects import Subject, subject_of
 from bufferfolio.water import density
 from bufferfolio.weighing import Adjustment, adjustment_of, order_of, times, weighings
@@ -28,9 +30,13 @@ def subject(key: str) -> Subject:
     return subject_of(shipped().formulations[key], shipped())
 
 
+@cache
+def ways_of(key: str) -> tuple[Route, ...]:
+    return ways_to(subject(key), shipped())
+
+
 def bench(key: str) -> Bench:
-    this = subject(key)
-    return bench_of(this, shipped(), ways_to(this, shipped()))
+    return bench_of(subject(key), shipped(), ways_of(key))
 
 
 # Grams in a litre of the primary standards, weighed in air; R. G. Bates, Determination of pH, 2nd
@@ -101,7 +107,7 @@ def test_units_of_a_batch() -> None:
 def test_what_stands_on_the_shelf_is_told(key: str) -> None:
     """Of every reagent of every way: formula, hazards spelled out, handling; no key is missing."""
     this = subject(key)
-    ways = ways_to(this, shipped())
+    ways = ways_of(key)
     found = bench_of(this, shipped(), ways)
     shelf = found.shelf
     assert len(found.ways) == len(set(found.ways)) == len(ways)
@@ -116,13 +122,13 @@ def test_what_stands_on_the_shelf_is_told(key: str) -> None:
 
 
 def test_ways_are_told_apart_by_what_they_do_not_share() -> None:
-    ways = ways_to(subject("tris-assay"), shipped())
+    ways = ways_of("tris-assay")
     assert way_labels([way.recipe for way in ways]) == (
         "Tris + hydrochloric acid, 37 %",
         "Tris + Tris hydrochloride",
         "Tris hydrochloride + sodium hydroxide, 1 mol/L",
     )
-    alone = [ways_to(subject("plain-water"), shipped())[0].recipe]
+    alone = [ways_of("plain-water")[0].recipe]
     assert way_labels(alone) == ("",)
 
 
@@ -135,7 +141,7 @@ def test_order_in_words() -> None:
 
 def test_a_liquid_acid_or_base_goes_in_slowly_whatever_family_it_brings() -> None:
     """Sulfuric acid brings a family, and boils water as the strongest acid does."""
-    ways = ways_to(subject("activation-dip"), shipped())
+    ways = ways_of("activation-dip")
     recipes = [way.recipe for way in ways]
     with_acid = [
         one for one in recipes if any(part.key == "sulfuric-acid-96" for part in one.parts)
