@@ -149,15 +149,30 @@
     return "It holds " + each.join(", ") + " than the recipe.";
   }
 
+  /** What does not depend on a batch: the recipe's own reading, and the advice.
+   * @param {Subject} subject
+   * @param {number} temperature K, of the page
+   * @returns {{own: Band, target: number, advice: Adjustment}}
+   */
+  function standingOf(subject, temperature) {
+    const far = Math.abs(temperature - subject.reference_temperature) >= SAME;
+    const madeAt = far ? temperature : subject.make_up_temperature;
+    return {
+      own: bf.uncertainty.bandOf(subject, temperature),
+      target: bf.measurements.targetAt(subject, temperature),
+      advice: bf.weighing.adjustmentOf({ ...subject, make_up_temperature: madeAt }),
+    };
+  }
+
   /** What a batch should read as it was made, beside the recipe's own reading.
    * @param {Batch} batch
    * @param {Subject} subject
    * @param {number} temperature K
    * @param {Record<string, number>} values
+   * @param {{own: Band, target: number}} standing
    * @returns {Outlook}
    */
-  function outlookOf(batch, subject, temperature, values) {
-    const { bandOf } = bf.uncertainty;
+  function outlookOf(batch, subject, temperature, values, { own, target }) {
     const mixture = mixtureOf(batch.made, subject.mixture);
     const state = stateAt({ ...subject, mixture }, temperature);
     const pHOf = (recipe) =>
@@ -165,13 +180,13 @@
     const found = weighings(batch.planned, values.balance, values.cylinder);
     const shown = asWeighed(batch.planned, new Map(found.map(({ rounded }, at) => [at, rounded])));
     return {
-      band: bandOf(subject, temperature, batch.made),
-      own: bandOf(subject, temperature),
-      target: bf.measurements.targetAt(subject, temperature),
+      band: batch.own ? own : bf.uncertainty.bandOf(subject, temperature, batch.made),
+      own,
+      target,
       tolerance: subject.expected === null ? null : subject.expected.tolerance,
       ionic_strength: state.ionic_strength,
       capacity: state.capacity,
-      planned: pHOf(batch.planned),
+      planned: batch.own ? own.pH : pHOf(batch.planned),
       rounded: pHOf(shown),
     };
   }
@@ -263,7 +278,7 @@
   }
 
   bf.make_up_words = {
-    rowsOf, orderWords, adjustmentWords, degrees, differenceWords, outlookOf, madeWords, goingBy,
-    outlookWords, roundingWords, factWords, offWords, handlingWords,
+    rowsOf, orderWords, adjustmentWords, degrees, differenceWords, standingOf, outlookOf,
+    madeWords, goingBy, outlookWords, roundingWords, factWords, offWords, handlingWords,
   };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

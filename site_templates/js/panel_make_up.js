@@ -5,6 +5,8 @@
 
   const { numberOf } = bf.panel_state;
 
+  const UNREAD = "What cannot be read does not count until it is put right.";
+
   /** @param {object} data the page's data block
    * @returns {Section | null} */
   function open(data) {
@@ -27,6 +29,8 @@
       water: root.querySelector("[data-water]"),
       waterField: document.getElementById("input-weighed-water"),
       batch: null,
+      conditions: "", // to which `standing` belongs
+      standing: null,
       lines: [],
     };
     const section = root.closest("section");
@@ -101,23 +105,31 @@
     showWay(view, batch);
     made.classList.toggle("stale", faulty);
     const at = words.degrees(temperature, situation.texts.get("temperature-unit") || "C");
-    const outlook = words.outlookOf(batch, subject, temperature, values);
-    if (!faulty) showMade(view, batch, outlook, at);
+    const standing = standingUnder(view, situation);
+    const outlook = words.outlookOf(batch, subject, temperature, values, standing);
+    if (faulty) write(view.root.querySelector("[data-going-by]"), UNREAD);
+    else showMade(view, batch, outlook, at);
     showList(document.querySelector("[data-order]"), words.orderWords(batch.planned));
-    const advice = adviceOf(situation).map((line) => ["", line]);
-    showList(document.querySelector("[data-advice]"), advice);
+    showAdvice(situation, standing.advice);
     view.lines = linesOf(view, batch, rows, water, words.outlookWords(outlook, at));
     return { lines: view.lines, facts: { batch: water, made: words.madeWords(batch) } };
   }
 
-  /** @param {Situation} situation @returns {string[]} */
-  function adviceOf({ subject, temperature, texts }) {
-    const far = Math.abs(temperature - subject.reference_temperature) >= 0.5;
-    const madeAt = far ? temperature : subject.make_up_temperature;
-    const advice = bf.weighing.adjustmentOf({ ...subject, make_up_temperature: madeAt });
+  /** What stands while only the batch changes is worked out once. */
+  function standingUnder(view, { subject, temperature, values }) {
+    const conditions = temperature + " K, " + values.strength;
+    if (view.conditions !== conditions) {
+      view.conditions = conditions;
+      view.standing = bf.make_up_words.standingOf(subject, temperature);
+    }
+    return view.standing;
+  }
+
+  function showAdvice({ subject, texts }, advice) {
     const tolerance = subject.expected === null ? null : subject.expected.tolerance;
-    return bf.make_up_words.adjustmentWords(
+    const lines = bf.make_up_words.adjustmentWords(
       advice, tolerance, subject.additions.length > 0, texts.get("temperature-unit") || "C");
+    showList(document.querySelector("[data-advice]"), lines.map((line) => ["", line]));
   }
 
   function showRow(view, row, at, batch, words, values) {
