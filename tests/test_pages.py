@@ -231,12 +231,12 @@ def test_the_batch_of_the_recipe_is_what_the_recipe_says(folio: Site, key: str) 
     """An amount stated as mass or volume comes back from molality as it was written."""
     page = folio.pages[f"formulations/{key}.html"]
     for index, portion in enumerate(LIBRARY.formulations[key].make_up.portions):
-        row = page.one("tr", data_portion=str(index))
+        row = page.one("tr", data_recipe=str(index))
         number, unit = portion.stated.split(maxsplit=1)
         factor = {"g": 1.0, "mg": 1e-3, "kg": 1e3, "mL": 1.0, "L": 1e3}.get(unit)
         if factor is None:
             continue
-        amount, shown = row.one(data_value="amount").text().split()
+        amount, shown = row.one(data_own="amount").text().split()
         of_shown = {"g": 1.0, "mg": 1e-3, "kg": 1e3, "mL": 1.0, "L": 1e3, "µL": 1e-3}[shown]
         # Four figures are shown.
         assert float(amount) * of_shown == pytest.approx(float(number) * factor, rel=5.1e-4)

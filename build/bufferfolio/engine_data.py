@@ -8,13 +8,12 @@ from collections.abc import Sequence
 from typing import Final
 
 from bufferfolio.activity import name_of
-from bufferfolio.composition import Addition, moles
+from bufferfolio.composition import Addition
 from bufferfolio.definitions import (
     Family,
     Formulation,
     Interaction,
     Ion,
-    Portion,
     PublishedEquation,
     Step,
     Titrant,
@@ -87,9 +86,6 @@ def subject_data(subject: Subject) -> Data:
         "model": name_of(subject.model),
         "interactions": [_interaction_data(pair) for pair in subject.interactions],
         "water": subject.water,
-        "portions": [
-            _portion_data(portion, subject.water) for portion in formulation.make_up.portions
-        ],
         "titrants": [
             _titrant_data(titrant, added, mixture.families)
             for titrant, added in zip(formulation.titrants, subject.additions, strict=True)
@@ -160,17 +156,6 @@ def _care_data(care: Care) -> Data:
         "temperature": care.temperature,
         "meter": care.meter,
         "stated": list(care.stated),
-    }
-
-
-def _portion_data(portion: Portion, water: float) -> Data:
-    reagent, stock = portion.reagent, portion.reagent.stock
-    return {
-        "label": reagent.label,
-        "amount": moles(portion, water),
-        "mass": reagent.molar_mass / (stock.mass_fraction if stock else reagent.purity),
-        # None: it is weighed, whether solid or liquid.
-        "density": None if stock is None or portion.weighed else stock.density,
     }
 
 

@@ -17,17 +17,20 @@ from bufferfolio.suspects import scene_of
 from bufferfolio.uncertainty import band_of
 
 
-def field_data(subject: Subject, library: Library) -> Data:
-    """Return what goes into the page's data block under `field`."""
+def field_data(subject: Subject, library: Library, routes: Sequence[Route] | None = None) -> Data:
+    """Return what goes into the page's data block under `field`; `routes` if they are at hand."""
     setting = setting_of(subject, library)
-    routes = routes_of(
-        subject, shelf_of(subject, library), reference_temperature(subject.formulation)
-    )
     return {
         "setting": setting_data(setting),
-        "routes": routes_data(routes),
+        "routes": routes_data(ways_to(subject, library) if routes is None else routes),
         "checks": field_checks(setting),
     }
+
+
+def ways_to(subject: Subject, library: Library) -> tuple[Route, ...]:
+    """Return the ways to make a formulation from what the library has on its shelf."""
+    kelvin = reference_temperature(subject.formulation)
+    return routes_of(subject, shelf_of(subject, library), kelvin)
 
 
 def routes_data(routes: Sequence[Route]) -> Data:

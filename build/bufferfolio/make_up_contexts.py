@@ -1,15 +1,23 @@
 """The make-up of a formulation as its sheet shows it: batch, amounts and hazard statements."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
+import numpy as np
+
 from bufferfolio.composition import moles
-from bufferfolio.definitions import Formulation, MakeUp, Portion, Reagent
+from bufferfolio.definitions import Formulation, Library, MakeUp, Portion, Reagent
+from bufferfolio.engine_data import Data
 from bufferfolio.formatting import chemical, mass, plain, volume
 from bufferfolio.hazards import statement
+from bufferfolio.make_up_words import adjustment_words, order_words, way_labels
 from bufferfolio.page_parts import Cited, cited
+from bufferfolio.recipes import measure_of
+from bufferfolio.routes import Route
 from bufferfolio.subjects import Subject
+from bufferfolio.water import density
+from bufferfolio.weighing import adjustment_of
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -55,6 +63,30 @@ class CorrectContext:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Step:
+    """What a balance can tell apart, or the marks of a cylinder."""
+
+    value: str
+    label: str
+    factor: float  # to kg or m³
+    chosen: bool
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Bench:
+    """What the weigh-out of a sheet starts with, and its advice."""
+
+    balances: tuple[Step, ...]
+    cylinders: tuple[Step, ...]
+    ways: tuple[str, ...]  # the recipe first
+    rows: int  # reagents of the way that has most
+    forms: int  # of the reagent that has most
+    order: tuple[tuple[str, str], ...]
+    advice: tuple[str, ...]
+    shelf: Data  # what the page says of the reagents of all ways
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class HazardRow:
     """A hazard statement and who carries it."""
 
@@ -66,8 +98,10 @@ class HazardRow:
 def batch_of(make_up: MakeUp) -> Batch:
     """Return how much a recipe makes, in the unit that reads best."""
     if make_up.mass is not None:
-        return _batch("mass", make_up.mass, make_up.basis)
-    return _batch("volume", make_up.volume or 0.0, make_up.basis)
+        heavy = float(density(np.array(make_up.temperature)))
+        others = tuple(replace(each, factor=heavy * each.factor) for each in VOLUME_UNITS)
+        return _batch("mass", make_up.mass, make_up.basis, others)
+    return _batch("volume", make_up.volume or 0.0, make_up.basis, (US_GALLON,))
 
 
 def correct_context(formulation: Formulation, batch: Batch) -> CorrectContext:
@@ -75,12 +109,12 @@ def correct_context(formulation: Formulation, batch: Batch) -> CorrectContext:
     amount = batch.amount if batch.quantity == "volume" else batch.amount / WATER
     titrants = enumerate(formulation.titrants)
     return CorrectContext(
-        volume=_batch("volume", amount, batch.basis),
+        volume=_batch("volume", amount, batch.basis, (US_GALLON,)),
         choices=(("", "what fits"), *((str(at), titrant.label) for at, titrant in titrants)),
     )
 
 
-def _batch(quantity: str, amount: float, basis: str) -> Batch:
+def _batch(quantity: str, amount: float, basis: str, others: tuple[Unit, ...]) -> Batch:
     units, text = (
         (MASS_UNITS, mass(amount)) if quantity == "mass" else (VOLUME_UNITS, volume(amount))
     )
@@ -92,7 +126,7 @@ def _batch(quantity: str, amount: float, basis: str) -> Batch:
         basis=basis,
         typed=plain(amount / unit.factor, 6),
         unit=unit,
-        units=units,
+        units=(*units, *others),
         text=text,
     )
 
@@ -130,6 +164,61 @@ def _amount(portion: Portion, water: float) -> str:
     return volume(kilograms / reagent.stock.density)
 
 
+def bench_of(subject: Subject, library: Library, routes: Sequence[Route]) -> Bench:
+    """Return what the weigh-out starts with, and the advice for the recipe as it is written."""
+    recipe, formulation = subject.recipe, subject.formulation
+    drops = [part.amount * measure_of(part) for part in recipe.parts if part.added.volume]
+    fine = (
+        [step for step in CYLINDERS if step.factor / 2.0 <= subject.care.volume * min(drops)]
+        if drops
+        else []
+    )
+    cylinder = fine[-1] if fine else CYLINDERS[USUAL_CYLINDER]
+    expected = formulation.expected
+    return Bench(
+        balances=BALANCES,
+        cylinders=tuple(replace(step, chosen=step == cylinder) for step in CYLINDERS),
+        ways=way_labels([route.recipe for route in routes]),
+        rows=max(len(route.recipe.parts) for route in routes),
+        forms=1 + max((len(each) for route in routes for each in route.instead), default=0),
+        order=order_words(recipe),
+        advice=adjustment_words(
+            adjustment_of(subject),
+            None if expected is None else expected.tolerance,
+            can_be_set=bool(formulation.titrants),
+        ),
+        shelf={
+            **shelf_data(routes, library),
+            "stated": [portion.stated for portion in formulation.make_up.portions],
+        },
+    )
+
+
+def shelf_data(routes: Sequence[Route], library: Library) -> Data:
+    """Return what the page says of every reagent that a way may take, its hazards spelled out."""
+    keys: dict[str, None] = {}
+    ions: dict[str, str] = {}
+    for route in routes:
+        for part in (*route.recipe.parts, *(each for one in route.instead for each in one)):
+            keys[part.key] = None
+        ions.update((name, chemical(name)) for name, _ in route.differences)
+    reagents = {key: library.reagents[key] for key in keys}
+    codes = sorted({code for reagent in reagents.values() for code in reagent.hazards})
+    return {
+        "reagents": {
+            key: {
+                "formula": chemical(reagent.formula),
+                "grade": grade_of(reagent),
+                "hazards": list(reagent.hazards),
+                "handling": reagent.handling,
+            }
+            for key, reagent in reagents.items()
+        },
+        "statements": {code: statement(code) for code in codes},
+        "ions": ions,
+    }
+
+
 def reagents_of(formulation: Formulation) -> tuple[Reagent, ...]:
     """Return the reagents of make-up and titrants, each once, in the order of use."""
     used = [portion.reagent for portion in formulation.make_up.portions]
@@ -160,3 +249,35 @@ MASS_UNITS: Final[tuple[Unit, ...]] = (
     Unit(value="g", label="g", factor=1e-3),
     Unit(value="kg", label="kg", factor=1.0),
 )
+# Exact by definition: 231 cubic inches.
+US_GALLON: Final = Unit(value="gal", label="US gal", factor=3.785411784e-3)
+
+
+def _steps(chosen: str, *steps: tuple[str, float]) -> tuple[Step, ...]:
+    return tuple(
+        Step(value=value, label=value, factor=factor, chosen=value == chosen)
+        for value, factor in steps
+    )
+
+
+# Powers of ten only: the page writes as many decimals as the display has.
+BALANCES: Final = _steps(
+    "0.01 g",
+    ("0.1 mg", 1e-7),
+    ("0.001 g", 1e-6),
+    ("0.01 g", 1e-5),
+    ("0.1 g", 1e-4),
+    ("1 g", 1e-3),
+    ("10 g", 1e-2),
+    ("100 g", 1e-1),
+)
+CYLINDERS: Final = _steps(
+    "",
+    ("1 µL", 1e-9),
+    ("0.01 mL", 1e-8),
+    ("0.1 mL", 1e-7),
+    ("1 mL", 1e-6),
+    ("10 mL", 1e-5),
+    ("100 mL", 1e-4),
+)
+USUAL_CYLINDER: Final = 2  # where the recipe has no liquid

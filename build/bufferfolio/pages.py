@@ -255,6 +255,7 @@ SCRIPTS: Final = (
     "suspects",
     "faults",
     "weighing",
+    "weighed_batch",
     "field_checks",
     "sheets",
     "explorations",
@@ -271,6 +272,7 @@ SCRIPTS: Final = (
     "figure_csv",
     "plots",
     "explorer_plots",
+    "make_up_words",
     "panel_state",
     "panel_checks",
     "panel_inputs",
@@ -283,6 +285,7 @@ SCRIPTS: Final = (
     "panel_copy",
     "panel_judging",
     "panel_dosing",
+    "panel_make_up",
     "panel_field",
     "panel",
 )

@@ -9,20 +9,23 @@ from typing import Final
 import numpy as np
 from markupsafe import Markup
 
-from bufferfolio.activity import MODELS, ActivityModel
+from bufferfolio.activity import ActivityModel
 from bufferfolio.composition import pure_water
 from bufferfolio.definitions import Family, Formulation, Library, Reagent
-from bufferfolio.engine_data import sheet_data
+from bufferfolio.engine_data import Data, sheet_data
 from bufferfolio.equilibrium import Status
-from bufferfolio.field_data import field_data
-from bufferfolio.figures import as_data
-from bufferfolio.formatting import chemical, mass, plain, volume
+from bufferfolio.estimate_words import EstimateWords, estimate_words
+from bufferfolio.field_data import field_data, ways_to
+from bufferfolio.figures import Figure, as_data
+from bufferfolio.formatting import chemical, mass, volume
 from bufferfolio.make_up_contexts import (
     Batch,
+    Bench,
     CorrectContext,
     HazardRow,
     PortionRow,
     batch_of,
+    bench_of,
     correct_context,
     hazard_rows,
     portion_rows,
@@ -39,11 +42,11 @@ from bufferfolio.page_parts import (
 )
 from bufferfolio.plots import SHEET_FIGURES
 from bufferfolio.reading_contexts import ReadingContext, reading_context
+from bufferfolio.routes import Route
 from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
-from bufferfolio.temperature import constants_at
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -88,16 +91,6 @@ class PairRow:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class EstimateWords:
-    """Where the textbook's estimate comes from, and what it leaves out."""
-
-    origin: str
-    difference: float  # full answer minus estimate; NaN where there is none
-    activity_part: float  # in pH; NaN where there is no estimate
-    rest: float  # in pH; likewise
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class SheetContext:
     """Everything on the page of one formulation."""
 
@@ -111,6 +104,7 @@ class SheetContext:
     batch: Batch
     correct: CorrectContext
     portions: tuple[PortionRow, ...]
+    bench: Bench
     species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
     sides: tuple[SideRow, ...]
@@ -131,25 +125,18 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
     """Return everything on the page of one formulation."""
     subject, reference = sheet.subject, sheet.reference
     formulation = subject.formulation
-    drawn = [draw(sheet) for draw in SHEET_FIGURES.values()]
-    # Plain water has no forms of a family to draw, and a solution without titrants no titration.
-    figures = [figure for figure in drawn if figure and (figure.series or figure.cells)]
-    present = [
-        family
-        for family, total in zip(subject.mixture.families, subject.mixture.totals, strict=True)
-        if total > 0.0
-    ]
+    figures = _figures(sheet)
+    present = _present(subject.mixture)
     constants = constant_rows(present, reference.temperature, numbers)
     pairs = _pairs(sheet, numbers)
     portions = portion_rows(subject, numbers)
     batch = batch_of(formulation.make_up)
-    data = sheet_data(sheet)
-    data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
-    data["field"] = field_data(subject, library)
-    canonical = json_text(data)
-    fingerprint = hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12]
-    data |= {"revision": formulation.revision, "fingerprint": fingerprint}
-    data |= {"key": formulation.key, "title": formulation.title}
+    ways = ways_to(subject, library)
+    bench = bench_of(subject, library, ways)
+    data = _engine_data(sheet, batch, ways, library)
+    identity = _identity(formulation, json_text(data))
+    data |= identity
+    data["shelf"] = bench.shelf
     data["figures"] = {figure.key: as_data(figure) for figure in figures}
     reagents = reagents_of(formulation)
     return SheetContext(
@@ -157,12 +144,13 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         sheet=sheet,
         status=STATUS_WORDS[reference.status],
         status_state=reference.status.name.lower().replace("_", "-"),
-        estimate=_estimate(sheet),
+        estimate=estimate_words(sheet),
         reading=reading_context(subject, reference.temperature),
         model=subject.model,
         batch=batch,
         correct=correct_context(formulation, batch),
         portions=portions,
+        bench=bench,
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
         sides=tuple(_side(sheet, side) for side in sheet.sides),
@@ -172,12 +160,41 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         hazards=hazard_rows(reagents),
         releases=tuple((item.label, item.releases) for item in reagents if item.releases),
         sources=_sources(constants, pairs, portions),
-        fingerprint=fingerprint,
+        fingerprint=identity["fingerprint"],
         words=_words(formulation, present, reagents),
         lowest_pH=float(np.nanmin(sheet.drift.state.pH)),
         highest_pH=float(np.nanmax(sheet.drift.state.pH)),
         page_data=json_text(data),
     )
+
+
+def _figures(sheet: Sheet) -> list[Figure]:
+    # Plain water has no forms of a family to draw, and a solution without titrants no titration.
+    drawn = [draw(sheet) for draw in SHEET_FIGURES.values()]
+    return [figure for figure in drawn if figure and (figure.series or figure.cells)]
+
+
+def _engine_data(sheet: Sheet, batch: Batch, ways: Sequence[Route], library: Library) -> Data:
+    """Return what the page reckons with; the fingerprint is taken of it."""
+    data = sheet_data(sheet)
+    data["batch"] = {"quantity": batch.quantity, "amount": batch.amount, "basis": batch.basis}
+    data["field"] = field_data(sheet.subject, library, ways)
+    return data
+
+
+def _present(mixture: Mixture) -> list[Family]:
+    totals = zip(mixture.families, mixture.totals, strict=True)
+    return [family for family, total in totals if total > 0.0]
+
+
+def _identity(formulation: Formulation, computed_from: str) -> dict[str, str]:
+    """Return by what a sheet is known, wherever its numbers are taken."""
+    return {
+        "key": formulation.key,
+        "title": formulation.title,
+        "revision": formulation.revision,
+        "fingerprint": hashlib.sha256(computed_from.encode("utf-8")).hexdigest()[:12],
+    }
 
 
 def _species(sheet: Sheet) -> tuple[SpeciesGroup, ...]:
@@ -237,39 +254,6 @@ def _side(sheet: Sheet, side: Side) -> SideRow:
     )
 
 
-def _estimate(sheet: Sheet) -> EstimateWords:
-    """Split the difference: activity coefficients, and everything else the estimate leaves out."""
-    subject, reference, estimate = sheet.subject, sheet.reference, sheet.estimate
-    families = subject.mixture.families
-    if estimate.kind == "none":
-        return EstimateWords(
-            origin=NO_PAIR, difference=math.nan, activity_part=math.nan, rest=math.nan
-        )
-    row = next(i for i, family in enumerate(families) if family.key == estimate.family)
-    family = families[row]
-    pK = constants_at(families, np.array(reference.temperature)).pK[row]
-    acid, base = family.species[estimate.step].label, family.species[estimate.step + 1].label
-    if estimate.kind == "pair":
-        origin = (
-            f"pK of {acid} → {base}, {float(pK[estimate.step]):.2f}, plus log₁₀ of the ratio "
-            f"{base} : {acid} as the recipe has it, {plain(estimate.ratio, 3)}."
-        )
-    else:
-        before = float(pK[estimate.step - 1])
-        origin = (
-            f"The recipe holds {acid} alone: half the sum of the pK before and after it, "
-            f"{before:.2f} and {float(pK[estimate.step]):.2f}."
-        )
-    plainly = replace(subject, model=MODELS["ideal"], interactions=())
-    ideal = state_at(plainly, reference.temperature).pH
-    return EstimateWords(
-        origin=origin,
-        difference=reference.pH - estimate.pH,
-        activity_part=reference.pH - ideal,
-        rest=ideal - estimate.pH,
-    )
-
-
 def _pairs(sheet: Sheet, numbers: Mapping[str, int]) -> tuple[PairRow, ...]:
     if not sheet.subject.model.uses_interactions:
         return ()
@@ -309,11 +293,6 @@ def _sources(
     every += [row.cited for row in pairs] + [row.source for row in portions]
     return tuple({one.number: one for one in sorted(every, key=lambda one: one.number)}.values())
 
-
-NO_PAIR: Final = (
-    "The recipe leaves no conjugate pair partly neutralised, so the textbook's formula says "
-    "nothing about it."
-)
 
 STATUS_WORDS: Final = {
     Status.SOLVED: "within the range of every constant and of the activity model",

@@ -83,7 +83,9 @@ def order_of(recipe: Recipe) -> tuple[tuple[int, str], ...]:
 def _rank(part: Part) -> int:
     if part.releases:
         return 2
-    return 1 if part.nature != "neutral" and not part.added.families else 0
+    # Strong acids and bases, and whatever acid or base comes as a liquid: both heat the water.
+    hot = not part.added.families or part.added.volume is not None
+    return 1 if part.nature != "neutral" and hot else 0
 
 
 def adjustment_of(subject: Subject) -> Adjustment:

@@ -94,7 +94,6 @@
     ]);
     addReserves(texts, sheet);
     addSpecies(texts, mixture, state.forms);
-    addMakeUp(texts, data, values);
     addConstants(texts, mixture.families, constants.pK);
     return texts;
   }
@@ -143,22 +142,6 @@
     mixture.ions.forEach((ion, at) => put(ion.name, mixture.molalities[at], NaN));
   }
 
-  /** The recipe for the batch that was asked for. */
-  function addMakeUp(texts, data, values) {
-    const { mass, volume } = bf.formatting;
-    const { batch, subject } = data;
-    const factor = (values.batch * values["batch-unit"]) / batch.amount;
-    const size = batch.quantity === "volume" ? volume : mass;
-    texts.set("water", size(batch.amount * factor));
-    subject.portions.forEach((portion, at) => {
-      const kilograms = portion.amount * portion.mass * factor * values.strength;
-      // Without a density it is weighed, as a solid is and a liquid whose recipe is in g or kg.
-      const amount = portion.density === null
-        ? mass(kilograms) : volume(kilograms / portion.density);
-      texts.set("portion " + at + " amount", amount);
-    });
-  }
-
   function addConstants(texts, families, pK) {
     families.forEach((family, f) => {
       pK[f].forEach((value, step) => {
@@ -196,11 +179,10 @@
 
   /** The name of a place: that of its value, after that of the row it stands in. */
   function placeOf(element) {
-    const row = element.closest("[data-species], [data-portion], [data-step]");
+    const row = element.closest("[data-species], [data-step]");
     const name = element.dataset.value;
     if (row === null) return name;
     if (row.dataset.species !== undefined) return "species " + row.dataset.species + " " + name;
-    if (row.dataset.portion !== undefined) return "portion " + row.dataset.portion + " " + name;
     return "step " + row.dataset.family + " " + row.dataset.step + " " + name;
   }
 

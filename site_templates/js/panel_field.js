@@ -36,7 +36,7 @@
    */
   function fieldOf(data) {
     const field = { data, sections: [], outcomes: {}, frame: 0 };
-    for (const name of ["panel_judging", "panel_dosing"]) {
+    for (const name of ["panel_judging", "panel_dosing", "panel_make_up"]) {
       const section = bf[name].open(data, field.outcomes);
       if (section !== null) field.sections.push(section);
     }
@@ -64,14 +64,15 @@
 
   /** @param {object} data @param {Reading} reading @param {Subject} subject
    * @returns {Situation} */
-  function situationOf(data, { values, texts, faults }, subject) {
+  function situationOf(data, reading, subject) {
+    const { values, texts, faults } = reading;
     const temperature = values.temperature + ZERO_CELSIUS;
     const compensation = Number.isNaN(values.compensation)
       ? null : values.compensation + ZERO_CELSIUS;
     const pH = bf.measurements.meant(values.reading, temperature, compensation);
     return {
-      data, subject, temperature, reading: values.reading, compensation, pH, recipe: null,
-      values, texts, faults,
+      data, subject, temperature, reading: values.reading, compensation, pH,
+      recipe: bf.weighed_batch.recipeOf(data, subject, reading), values, texts, faults,
     };
   }
 

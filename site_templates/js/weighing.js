@@ -105,7 +105,9 @@
   /** @param {Part} part @returns {number} */
   function rankOf(part) {
     if (part.releases.length > 0) return 2;
-    return part.nature !== "neutral" && part.added.families.length === 0 ? 1 : 0;
+    // Strong acids and bases, and whatever acid or base comes as a liquid: both heat the water.
+    const hot = part.added.families.length === 0 || part.added.volume !== null;
+    return part.nature !== "neutral" && hot ? 1 : 0;
   }
 
   /** At what pH to set a batch where it is made up, and what a mistake would cost.
