@@ -176,7 +176,9 @@ def write_assets(folder: Path) -> None:
     """Write what pages share: styles, the page's own engine, Bokeh and its empty plots."""
     folder.mkdir()
     templates = resources.templates()
-    style = (templates / "css" / "site.css").read_text(encoding="utf-8")
+    # What all pages share comes first, so that the style of a part may differ from it.
+    sheets = sorted((templates / "css").glob("*.css"), key=lambda css: (css.stem != "site", css.stem))
+    style = "".join(css.read_text(encoding="utf-8") for css in sheets)
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
     for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
@@ -275,7 +277,7 @@ SCRIPTS: Final = (
     "panel",
 )
 
-# What a sheet needs besides for a titration of one's own, before anything of the panel.
+# What a sheet needs besides for a titration of one's own; none asks for the panel as it is read.
 TITRATION_SCRIPTS: Final = (
     "measured_layout",
     "measured",
@@ -290,6 +292,12 @@ TITRATION_SCRIPTS: Final = (
     "gran",
     "fit_words",
     "measured_plots",
+    "titration_example",
+    "titration_tables",
+    "panel_titration_points",
+    "panel_titration_show",
+    "panel_titration_fit",
+    "panel_titration",
 )
 _PANEL: Final = SCRIPTS.index("panel_state")
 SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])

@@ -41,6 +41,7 @@ from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
 from bufferfolio.temperature import constants_at
+from bufferfolio.titration_contexts import TitrationForm, titration_form
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -114,6 +115,7 @@ class SheetContext:
     pairs_possible: int  # of a cation and an anion, titrants included
     hazards: tuple[HazardRow, ...]
     releases: tuple[tuple[str, tuple[str, ...]], ...]  # reagent, what it may release
+    titration: TitrationForm
     sources: tuple[Cited, ...]  # that this page cites, by number
     fingerprint: str
     words: str  # that the index looks through
@@ -161,6 +163,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         pairs_possible=_possible_pairs(subject.mixture),
         hazards=hazard_rows(reagents),
         releases=tuple((item.label, item.releases) for item in reagents if item.releases),
+        titration=titration_form(subject),
         sources=_sources(constants, pairs, portions),
         fingerprint=hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12],
         words=_words(formulation, present, reagents),
