@@ -68,8 +68,8 @@ def scatter_words(result: Fit) -> str:
     if not chi_squared <= MISFIT:
         wide = "farther off than"
     return (
-        f"the points lie {wide} reading and burette explain ({fixed(spread, 3)} pH about the curve; "
-        f"a reading is taken to be good to {plain(precision.pH)}, a volume to "
+        f"the points lie {wide} reading and burette explain ({fixed(spread, 3)} pH about the "
+        f"curve; a reading is taken to be good to {plain(precision.pH)}, a volume to "
         f"{volume(precision.volume, 2)})"
     )
 

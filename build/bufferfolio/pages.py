@@ -177,7 +177,9 @@ def write_assets(folder: Path) -> None:
     folder.mkdir()
     templates = resources.templates()
     # What all pages share comes first, so that the style of a part may differ from it.
-    sheets = sorted((templates / "css").glob("*.css"), key=lambda css: (css.stem != "site", css.stem))
+    sheets = sorted(
+        (templates / "css").glob("*.css"), key=lambda css: (css.stem != "site", css.stem)
+    )
     style = "".join(css.read_text(encoding="utf-8") for css in sheets)
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
     for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):

@@ -115,13 +115,17 @@ class SheetContext:
     pairs_possible: int  # of a cation and an anion, titrants included
     hazards: tuple[HazardRow, ...]
     releases: tuple[tuple[str, tuple[str, ...]], ...]  # reagent, what it may release
-    titration: TitrationForm
     sources: tuple[Cited, ...]  # that this page cites, by number
     fingerprint: str
     words: str  # that the index looks through
     lowest_pH: float  # over the temperatures of use
     highest_pH: float
     page_data: Markup
+
+    @property
+    def titration(self) -> TitrationForm:
+        """What a reader may choose for a titration of one's own."""
+        return titration_form(self.sheet.subject)
 
 
 def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) -> SheetContext:
@@ -163,7 +167,6 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         pairs_possible=_possible_pairs(subject.mixture),
         hazards=hazard_rows(reagents),
         releases=tuple((item.label, item.releases) for item in reagents if item.releases),
-        titration=titration_form(subject),
         sources=_sources(constants, pairs, portions),
         fingerprint=hashlib.sha256(canonical.encode("utf-8")).hexdigest()[:12],
         words=_words(formulation, present, reagents),

@@ -52,7 +52,8 @@ def as_text(found: Findings) -> Iterator[str]:
     yield table(HEAD, rows, right=frozenset({1, 2, 4}))
     if len(rows) > 1:
         yield from ("", "correlation", *_correlations(result))
-    yield f"\nreduced chi-squared {significant(result.reduced_chi_squared, 3)}: {scatter_words(result)}"
+    chi_squared = significant(result.reduced_chi_squared, 3)
+    yield f"\nreduced chi-squared {chi_squared}: {scatter_words(result)}"
     yield verdict_words(result)
     yield from ("", "end points", *(_end_point(each, unit) for each in found.end_points))
     yield from (_gran(each, found, unit) for each in found.gran_lines)
