@@ -59,14 +59,18 @@
     });
   }
 
-  /** Where recipe and label let the titrant meet a whole number of protons. */
+  /** Where recipe and label let the titrant meet a whole number of protons: what shows on the
+   * curve; what does not only where nothing does. */
   function predictedMeetings({ experiment, points }) {
     const { mixture, added, temperature, model, interactions, water } = experiment;
     const labels = new Map(mixture.families.map((family) => [family.key, family.label]));
     const per = added.volume * water;
     const last = REACH * points.volume[points.volume.length - 1];
-    return bf.titration.equivalences(mixture, added, temperature, model, interactions)
-      .filter((each) => each.amount * per <= last)
+    const ahead = bf.titration
+      .equivalences(mixture, added, temperature, model, interactions)
+      .filter((each) => each.amount * per <= last);
+    const visible = ahead.filter((each) => each.visible);
+    return (visible.length > 0 ? visible : ahead)
       .map((each) => ({
         by: "predicted by the recipe",
         at: each.amount * per,
