@@ -69,7 +69,7 @@ def test_a_fit_is_told_in_words(points: Path, capsys: Printed) -> None:
     assert lines[8] == "correlation"
     assert lines[9].startswith("  strength, offset: ")
     assert lines[11].startswith("reduced chi-squared ")
-    assert lines[11].endswith("a reading is taken to be good to 0.005, a volume to 0.002 mL")
+    assert lines[11].endswith("a reading is taken to be good to 0.005, a volume to 2 µL)")
     assert lines[12] == "Well determined: every standard error is small enough to be of use."
     assert lines[14] == "end points"
     assert lines[15].startswith("  steepest at 2.55")

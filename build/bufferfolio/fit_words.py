@@ -1,14 +1,16 @@
 """What a fit says, in words and rounded numbers. `js/fit_words.js` writes the same characters."""
 
+import math
 from collections.abc import Mapping, Sequence
 from typing import Final
 
 from bufferfolio.experiments import Experiment
 from bufferfolio.figure_ticks import power_of_ten
 from bufferfolio.fit_parameters import Free
-from bufferfolio.fit_quality import FEWEST, Kind
+from bufferfolio.fit_quality import FEWEST, MISFIT, Kind
 from bufferfolio.fitting import Fit
-from bufferfolio.formatting import NOTHING, fixed, significant
+from bufferfolio.formatting import NOTHING, fixed, plain, significant, volume
+from bufferfolio.gran import GranLine
 
 MOST_DECIMALS: Final = 5
 
@@ -55,6 +57,28 @@ def verdict_words(result: Fit) -> str:
         least=free + FEWEST,
         times=times,
     )
+
+
+def scatter_words(result: Fit) -> str:
+    """Return what the reduced chi-squared says: how far the points lie off, and why they may."""
+    precision = result.precision
+    spread = math.sqrt(float((result.residuals**2).mean()))
+    chi_squared = result.reduced_chi_squared
+    wide = "as far off as" if 1.0 / MISFIT <= chi_squared <= MISFIT else "nearer than"
+    if not chi_squared <= MISFIT:
+        wide = "farther off than"
+    return (
+        f"the points lie {wide} reading and burette explain ({fixed(spread, 3)} pH about the "
+        f"curve; a reading is taken to be good to {plain(precision.pH)}, a volume to "
+        f"{volume(precision.volume, 2)})"
+    )
+
+
+def gran_words(line: GranLine, experiment: Experiment) -> str:
+    """Return what a Gran line belongs to."""
+    if line.kind == "weak":
+        return quantity_name(Free(kind="pK", family=line.family, step=line.step), experiment)
+    return "strong acid or base" if line.side == "before" else "titrant in excess"
 
 
 def listed(names: Sequence[str]) -> str:

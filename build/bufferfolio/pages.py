@@ -290,7 +290,7 @@ SCRIPTS: Final = (
     "panel",
 )
 
-# What a sheet needs besides for a titration of one's own, before anything of the panel.
+# What a sheet needs besides for a titration of one's own; none asks for the panel as it is read.
 TITRATION_SCRIPTS: Final = (
     "measured_layout",
     "measured",
@@ -305,6 +305,12 @@ TITRATION_SCRIPTS: Final = (
     "gran",
     "fit_words",
     "measured_plots",
+    "titration_example",
+    "titration_tables",
+    "panel_titration_points",
+    "panel_titration_show",
+    "panel_titration_fit",
+    "panel_titration",
 )
 _PANEL: Final = SCRIPTS.index("panel_state")
 SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])

@@ -47,6 +47,7 @@ from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
+from bufferfolio.titration_contexts import TitrationForm, titration_form
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -119,6 +120,11 @@ class SheetContext:
     lowest_pH: float  # over the temperatures of use
     highest_pH: float
     page_data: Markup
+
+    @property
+    def titration(self) -> TitrationForm:
+        """What a reader may choose for a titration of one's own."""
+        return titration_form(self.sheet.subject)
 
 
 def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) -> SheetContext:

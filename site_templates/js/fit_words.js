@@ -2,11 +2,12 @@
 (function (bf) {
   "use strict";
 
-  const { NOTHING, fixed, significant } = bf.formatting;
+  const { NOTHING, fixed, plain, significant, volume } = bf.formatting;
   const { keyOf } = bf.fit_parameters;
 
   const MOST_DECIMALS = 5;
   const FEWEST = 3; // as in fit_quality.py
+  const MISFIT = 4; // likewise
   const NAMES = {
     strength: "strength of the titrant",
     offset: "offset of the electrode",
@@ -76,11 +77,35 @@
     return VERDICTS[verdict.kind].replace(/\{(\w+)\}/g, (_, name) => values[name]);
   }
 
+  /** What the reduced chi-squared says: how far the points lie off, and why they may.
+   * Mirrors `scatter_words`.
+   * @param {Fit} result @returns {string} */
+  function scatterWords(result) {
+    const { precision, residuals } = result;
+    const squares = residuals.reduce((sum, each) => sum + each * each, 0);
+    const spread = Math.sqrt(squares / residuals.length);
+    const chiSquared = result.reduced_chi_squared;
+    let wide = chiSquared >= 1 / MISFIT && chiSquared <= MISFIT ? "as far off as" : "nearer than";
+    if (!(chiSquared <= MISFIT)) wide = "farther off than";
+    return `the points lie ${wide} reading and burette explain (${fixed(spread, 3)} pH about the ` +
+      `curve; a reading is taken to be good to ${plain(precision.pH)}, a volume to ` +
+      `${volume(precision.volume, 2)})`;
+  }
+
+  /** What a Gran line belongs to. Mirrors `gran_words`.
+   * @param {GranLine} line @param {Experiment} experiment @returns {string} */
+  function granWords({ side, kind, family, step }, experiment) {
+    if (kind === "weak") return quantityName({ kind: "pK", family, step }, experiment);
+    return side === "before" ? "strong acid or base" : "titrant in excess";
+  }
+
   /** Names as a list in a sentence. @param {string[]} names @returns {string} */
   function listed(names) {
     if (names.length < 2) return names.join("");
     return names.slice(0, -1).join(", ") + " and " + names[names.length - 1];
   }
 
-  bf.fit_words = { quantityName, quantityUnit, withError, verdictWords, listed };
+  bf.fit_words = {
+    quantityName, quantityUnit, withError, verdictWords, scatterWords, granWords, listed,
+  };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

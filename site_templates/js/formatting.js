@@ -84,5 +84,7 @@
     return after ? sign + before + "." + after : sign + before;
   }
 
-  bf.formatting = { fixed, signed, significant, plain, percent, celsius, mass, volume };
+  bf.formatting = {
+    NOTHING, fixed, signed, significant, plain, percent, celsius, mass, volume,
+  };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

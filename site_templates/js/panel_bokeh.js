@@ -5,13 +5,17 @@
 
   const QUIET = 400; // ms without input before a plot is made: making one takes longer than a frame
 
-  /** A maker of plots for one page.
+  let shared = null; // a page fetches Bokeh once, and makes one plot at a time, whoever asks
+
+  /** The maker of plots of this page.
    * @param {string} assets path of the shared scripts
    * @returns {{quietFrom: number, scripts: Promise<void> | null, assets: string, busy: boolean,
    *   waiting: (() => Promise<void>)[], broken: boolean}}
    */
   function studio(assets) {
-    return { assets, scripts: null, quietFrom: 0, busy: false, waiting: [], broken: false };
+    shared = shared ||
+      { assets, scripts: null, quietFrom: 0, busy: false, waiting: [], broken: false };
+    return shared;
   }
 
   /** Draw a figure as a Bokeh plot when the page has time for it.

@@ -117,5 +117,5 @@ def test_every_input_has_a_name_and_its_message(visitor: Visitor) -> None:
                 name
             )
         for each in page.locator('[data-input][aria-describedby]:not([type="range"])').all():
-            target = each.get_attribute("aria-describedby")
-            assert page.locator(f"#{target}").count() == 1
+            for target in (each.get_attribute("aria-describedby") or "").split():
+                assert page.locator(f"#{target}").count() == 1

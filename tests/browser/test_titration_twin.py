@@ -18,7 +18,7 @@ from bufferfolio.end_points import end_points
 from bufferfolio.engine_data import subject_data
 from bufferfolio.figure_styles import stylesheet
 from bufferfolio.figures import as_data, rounded
-from bufferfolio.fit_words import verdict_words, with_error
+from bufferfolio.fit_words import gran_words, scatter_words, verdict_words, with_error
 from bufferfolio.fitting import fit
 from bufferfolio.gran import gran_lines
 from bufferfolio.measured import parsed, told
@@ -54,6 +54,8 @@ FIT: Final = """
     const { experiment: _, ...rest } = fit;
     return {
       found, lines, fit: rest, words: bf.fit_words.verdictWords(fit),
+      scatter: bf.fit_words.scatterWords(fit),
+      belongs: lines.map((line) => bf.fit_words.granWords(line, experiment)),
       drawn: [...figures, ...recipe].map(bf.svg_figures.svg),
       written: fit.estimates.map((one) => bf.fit_words.withError(one.value, one.standard_error)),
     };
@@ -160,6 +162,7 @@ def test_fits_end_points_and_pictures_agree(twin: Page, plan: Plan, count: int) 
     assert there["fit"]["verdict"]["kind"] == here.verdict.kind
     assert there["fit"]["verdict"]["about"] == list(here.verdict.about)
     assert there["words"] == verdict_words(here)
+    assert there["scatter"] == scatter_words(here)
     written = [with_error(each.value, each.standard_error) for each in here.estimates]
     assert there["written"] == [list(each) for each in written]
 
@@ -167,6 +170,7 @@ def test_fits_end_points_and_pictures_agree(twin: Page, plan: Plan, count: int) 
     lines = gran_lines(case.experiment, case.points, found, case.precision)
     assert_close(there["found"], [asdict(each) for each in found])
     assert_close(there["lines"], [asdict(each) for each in lines])
+    assert there["belongs"] == [gran_words(line, case.experiment) for line in lines]
     figures = [
         *measured_figure(case.experiment, case.points, found, here),
         *measured_figure(case.experiment, case.points, found),

@@ -8,8 +8,14 @@ from typing import Final
 from bufferfolio.command.console import table
 from bufferfolio.definitions import Formulation, Titrant
 from bufferfolio.end_points import EndPoint
-from bufferfolio.fit_parameters import Free
-from bufferfolio.fit_words import quantity_name, quantity_unit, verdict_words, with_error
+from bufferfolio.fit_words import (
+    gran_words,
+    quantity_name,
+    quantity_unit,
+    scatter_words,
+    verdict_words,
+    with_error,
+)
 from bufferfolio.fitting import Estimate, Fit
 from bufferfolio.formatting import fixed, plain, signed, significant
 from bufferfolio.gran import GranLine
@@ -46,7 +52,8 @@ def as_text(found: Findings) -> Iterator[str]:
     yield table(HEAD, rows, right=frozenset({1, 2, 4}))
     if len(rows) > 1:
         yield from ("", "correlation", *_correlations(result))
-    yield f"\nreduced chi-squared {significant(result.reduced_chi_squared, 3)}: {_scatter(result)}"
+    chi_squared = significant(result.reduced_chi_squared, 3)
+    yield f"\nreduced chi-squared {chi_squared}: {scatter_words(result)}"
     yield verdict_words(result)
     yield from ("", "end points", *(_end_point(each, unit) for each in found.end_points))
     yield from (_gran(each, found, unit) for each in found.gran_lines)
@@ -73,14 +80,6 @@ def _correlations(result: Fit) -> Iterator[str]:
             yield f"  {keys[before]}, {key}: {value}"
 
 
-def _scatter(result: Fit) -> str:
-    spread = math.sqrt(float((result.residuals**2).mean()))
-    return (
-        f"the points lie {fixed(spread, 3)} pH about the curve; a reading is taken to be good to "
-        f"{plain(result.precision.pH)}, a volume to {_in('mL', result.precision.volume, 2)}"
-    )
-
-
 def _in(unit: str, volume: float, figures: int = 4) -> str:
     return f"{plain(volume / UNITS[unit], figures)} {unit}"
 
@@ -93,10 +92,7 @@ def _end_point(each: EndPoint, unit: str) -> str:
 
 def _gran(line: GranLine, found: Findings, unit: str) -> str:
     value, error = with_error(line.volume / UNITS[unit], line.standard_error / UNITS[unit])
-    what = "strong acid or base" if line.side == "before" else "titrant in excess"
-    if line.kind == "weak":
-        free = Free(kind="pK", family=line.family, step=line.step)
-        what = quantity_name(free, found.fit.experiment)
+    what = gran_words(line, found.fit.experiment)
     return f"  Gran, {line.side}: {value} ± {error} {unit} ({what}, {line.x.size} points)"
 
 
