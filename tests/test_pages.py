@@ -20,7 +20,14 @@ from bufferfolio import resources
 from bufferfolio.definitions import Library
 from bufferfolio.formatting import celsius, chemical, fixed, milli, percent, significant
 from bufferfolio.hazards import STATEMENTS
-from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, SHEET_SCRIPTS, PageReport, write_site
+from bufferfolio.pages import (
+    FIRST_SCRIPT,
+    INDEX_SCRIPTS,
+    SCRIPTS,
+    SHEET_SCRIPTS,
+    PageReport,
+    write_site,
+)
 from bufferfolio.search_words import typed
 from bufferfolio.sheets import Sheet, sheet_of
 from bufferfolio.temperature import pK_at
@@ -170,11 +177,15 @@ def test_nothing_half_made_shows(folio: Site, name: str) -> None:
 
 def test_every_script_is_linked_and_served(folio: Site) -> None:
     there = {path.stem for path in (resources.templates() / "js").glob("*.js")}
-    assert {*SHEET_SCRIPTS, *INDEX_SCRIPTS} == there
+    assert {FIRST_SCRIPT, *SHEET_SCRIPTS, *INDEX_SCRIPTS} == there
     expected = {"formulations/tris-assay.html": SHEET_SCRIPTS, "families/tris.html": SCRIPTS}
     for name, scripts in expected.items():
         linked = [s.attributes["src"] for s in folio.pages[name].all("script", defer="")]
         assert linked == [f"../assets/{script}.js" for script in scripts]
+    for page in folio.pages.values():
+        first = next(each for each in page.all("script") if "src" in each.attributes)
+        assert first.attributes["src"].endswith(f"assets/{FIRST_SCRIPT}.js")
+        assert "defer" not in first.attributes
     assets = {path.name for path in (folio.folder / "assets").iterdir()}
     shared = {"site.css", "bokeh.min.js", "skeletons.js"}
     assert assets == {*shared, *(f"{script}.js" for script in there)}

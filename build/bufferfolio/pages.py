@@ -189,7 +189,7 @@ def write_assets(folder: Path) -> None:
     files = sorted((templates / "css").glob("*.css"), key=lambda path: (path.stem != "site", path))
     style = "".join(path.read_text(encoding="utf-8") for path in files)
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
-    for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
+    for name in sorted({FIRST_SCRIPT, *SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
         (folder / f"{name}.js").write_text(script, encoding="utf-8", newline="\n")
     (folder / "skeletons.js").write_text(skeletons_script(), encoding="utf-8", newline="\n")
@@ -208,6 +208,7 @@ def environment_of(templates: Path) -> Environment:
     )
     environment.filters.update(FILTERS)
     environment.globals["sections"] = SECTIONS
+    environment.globals["first_script"] = FIRST_SCRIPT
     return environment
 
 
@@ -267,6 +268,7 @@ SCRIPTS: Final = (
     "svg_figures",
     "bokeh_figures",
     "formatting",
+    "fault_words",
     "figure_tables",
     "figure_csv",
     "plots",
@@ -283,6 +285,11 @@ SCRIPTS: Final = (
     "panel_copy",
     "panel_judging",
     "panel_dosing",
+    "panel_fault_rows",
+    "panel_fault",
+    "panel_log_entries",
+    "panel_log_store",
+    "panel_log",
     "panel_field",
     "panel",
 )
@@ -306,4 +313,14 @@ TITRATION_SCRIPTS: Final = (
 _PANEL: Final = SCRIPTS.index("panel_state")
 SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])
 
-INDEX_SCRIPTS: Final = ("panel_state", "panel_index")
+INDEX_SCRIPTS: Final = (
+    "panel_state",
+    "panel_index",
+    "panel_tools",
+    "panel_log_entries",
+    "panel_log_store",
+    "panel_log_index",
+)
+
+# What every page reads first, before it is shown.
+FIRST_SCRIPT: Final = "panel_contrast"

@@ -14,6 +14,7 @@ from bufferfolio.composition import pure_water
 from bufferfolio.definitions import Family, Formulation, Library, Reagent
 from bufferfolio.engine_data import sheet_data
 from bufferfolio.equilibrium import Status
+from bufferfolio.fault_contexts import FaultContext, fault_context
 from bufferfolio.field_data import field_data
 from bufferfolio.figures import as_data
 from bufferfolio.formatting import chemical, mass, plain, volume
@@ -43,6 +44,7 @@ from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
+from bufferfolio.substitutes import setting_of
 from bufferfolio.temperature import constants_at
 
 
@@ -114,6 +116,7 @@ class SheetContext:
     species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
     sides: tuple[SideRow, ...]
+    faults: FaultContext
     constants: tuple[ConstantRow, ...]
     pairs: tuple[PairRow, ...]
     pairs_possible: int  # of a cation and an anion, titrants included
@@ -166,6 +169,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
         sides=tuple(_side(sheet, side) for side in sheet.sides),
+        faults=fault_context(setting_of(subject, library)),
         constants=constants,
         pairs=pairs,
         pairs_possible=_possible_pairs(subject.mixture),

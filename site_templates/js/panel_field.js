@@ -36,7 +36,7 @@
    */
   function fieldOf(data) {
     const field = { data, sections: [], outcomes: {}, frame: 0 };
-    for (const name of ["panel_judging", "panel_dosing"]) {
+    for (const name of ["panel_judging", "panel_dosing", "panel_fault", "panel_log"]) {
       const section = bf[name].open(data, field.outcomes);
       if (section !== null) field.sections.push(section);
     }
