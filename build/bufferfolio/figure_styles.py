@@ -104,7 +104,9 @@ def stylesheet() -> str:
     ]
     # "screen": a page printed from a dark screen is still ink on white paper.
     screens = f"@media screen and (prefers-color-scheme:dark){{:root{{{dark}}}}}"
+    stark += f"--figure-line:{STARK_LINE};"
     sunlight = f"@media screen{{:root[data-contrast=high]{{{stark}}}{' '.join(STARK_RULES)}}}"
+    light += f"--figure-line:{LINE};"
     return "\n".join([f":root{{{light}}}", screens, sunlight, *RULES, *series, *bands]) + "\n"
 
 
@@ -130,9 +132,11 @@ def _series_rules(index: int, dash: tuple[int, ...]) -> str:
     )
 
 
+LINE: Final = 2.2  # px, width of lines
+STARK_LINE: Final = 3.2  # in bright sunlight
+
 # Thicker where shade alone would not carry; their selectors win over those of RULES.
 STARK_RULES: Final = (
-    ":root[data-contrast=high] svg.figure .line{stroke-width:3.2}",
     ":root[data-contrast=high] svg.figure .frame{stroke-width:1.6}",
     ":root[data-contrast=high] svg.figure :is(.mark,.iso){stroke-width:1.6}",
     ":root[data-contrast=high] svg.figure text{font-weight:600}",
@@ -149,7 +153,7 @@ RULES: Final = (
     "svg.figure .name{font-weight:600}",
     "svg.figure path{fill-rule:evenodd}",
     "svg.figure .frame{fill:none;stroke:var(--figure-frame);stroke-width:1}",
-    "svg.figure .line{fill:none;stroke-width:2.2;stroke-linejoin:round}",
+    "svg.figure .line{fill:none;stroke-width:var(--figure-line);stroke-linejoin:round}",
     "svg.figure path.point{fill-rule:nonzero;stroke-width:1.5;stroke-dasharray:none}",
     # A point of no length, as wide as its stroke.
     "svg.figure path.point.s0{stroke-width:6.5;stroke-linecap:round}",
