@@ -48,7 +48,7 @@
     write(view, found);
     view.lines = bf.panel_fault_rows.linesOf(found);
     const [first] = found.leading;
-    return { lines: view.lines, facts: { fault: factOf(found, first) } };
+    return { lines: view.lines, facts: { fault: factOf(found, first), second: found.second } };
   }
 
   /** What the log keeps: the leading fault, or that there is none. */
@@ -90,8 +90,10 @@
     place.className = "rank";
     place.textContent = rank + ".";
     head.prepend(place, " ");
+    const check = cell("td", "Check or do", row.check);
+    check.className = "check";
     return line(head, cell("td", "It would read", row.predicted), fitCell(row), shareCell(row),
-      cell("td", "Check or do", row.check));
+      check);
   }
 
   function plainRow(row) {

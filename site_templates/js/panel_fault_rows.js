@@ -3,8 +3,9 @@
  * @typedef {{words: string, predicted: string, mark: string, fit: string, share: string,
  *   weight: number, check: string}} FaultRow
  * @typedef {{mark: string, state: string, words: string, note: string, caption: string,
- *   leading: FaultRow[], all: FaultRow[], rest: string}} FaultAnswer
- *   mark, a sign; state, "right", "found", "none" or "refused"; rest, what is not in the list
+ *   second: string, leading: FaultRow[], all: FaultRow[], rest: string}} FaultAnswer
+ *   mark, a sign; state, "right", "found", "none" or "refused"; second, the second reading; rest,
+ *   what is not in the list
  */
 (function (bf) {
   "use strict";
@@ -77,7 +78,7 @@
     if (found.refusal !== "") {
       return {
         mark: "!", state: "refused", words: bf.measurements.REFUSALS[found.refusal], note: missing,
-        caption, leading: [], all: [], rest: "",
+        caption, second: "", leading: [], all: [], rest: "",
       };
     }
     const rows = (each) => each.map((one) => rowOf(setting.subject, one, readings));
@@ -85,7 +86,7 @@
     const leading = leadingOf(found, list);
     return {
       ...headline(found, list, leading, readings.length), note: missing, caption,
-      leading: rows(leading), all: rows(list),
+      second: readings.slice(1).map(toldOf).join(""), leading: rows(leading), all: rows(list),
       rest: "Something that is not on the list: " + shareText(found.unexplained) + " of the weight.",
     };
   }
@@ -149,12 +150,15 @@
   }
 
   function captionOf(readings, { compensation, recipe }) {
-    const told = readings.map(({ temperature, pH, dilution }) =>
-      "pH " + number(pH) + " at " + bf.formatting.celsius(temperature) + " °C" +
-      (dilution === 1 ? "" : ", diluted with as much water"));
+    const told = readings.map(toldOf);
     const meter = compensation === null ? "" : ", the meter’s compensation undone";
     const batch = recipe === null ? "the recipe" : "what was weighed";
     return "By " + batch + ", for " + told.join(" and ") + meter;
+  }
+
+  function toldOf({ temperature, pH, dilution }) {
+    return "pH " + number(pH) + " at " + bf.formatting.celsius(temperature) + " °C" +
+      (dilution === 1 ? "" : ", diluted with as much water");
   }
 
   function number(pH) {

@@ -25,6 +25,7 @@
     { key: "titrant", title: "correction with", from: ["dosing", "titrant"] },
     { key: "first", title: "first portion", from: ["dosing", "first"] },
     { key: "whole", title: "whole correction", from: ["dosing", "whole"] },
+    { key: "second", title: "second reading", from: ["fault", "second"] },
     { key: "fault", title: "likeliest fault", from: ["fault", "fault"] },
     { key: "note", title: "note" },
     { key: "initials", title: "initials" },
