@@ -3,7 +3,7 @@
 import re
 
 import pytest
-from playwright.sync_api import Page, expect
+from playwright.sync_api import expect
 
 from .conftest import Visitor
 from .readers import EXPLORER, SHEET, bring, field
