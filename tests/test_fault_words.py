@@ -110,7 +110,8 @@ def test_every_kind_says_what_to_check_or_do() -> None:
 def test_the_table_of_forecasts_holds_every_suspect_by_reading(key: str) -> None:
     this = setting(key)
     kelvin = reference_temperature(this.subject.formulation)
-    context, suspects = fault_context(this), suspects_of(this, kelvin)
+    context = fault_context(this.subject, shipped())
+    suspects = suspects_of(this, kelvin)
     assert context.count == len(suspects) - 1
     listed = [words for row in (*context.sized, *context.ranging) for words in row.faults]
     assert sorted(listed) == sorted(ranged(each) for each in suspects)

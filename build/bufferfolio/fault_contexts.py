@@ -3,11 +3,12 @@
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from bufferfolio.definitions import Library
 from bufferfolio.fault_words import ranged
 from bufferfolio.faults import forecasts
 from bufferfolio.formatting import fixed
-from bufferfolio.subjects import reference_temperature
-from bufferfolio.substitutes import Setting
+from bufferfolio.subjects import Subject, reference_temperature
+from bufferfolio.substitutes import setting_of
 from bufferfolio.suspects import suspects_of
 
 
@@ -28,9 +29,10 @@ class FaultContext:
     ranging: tuple[ForecastRow, ...]  # those of an unknown extent
 
 
-def fault_context(setting: Setting) -> FaultContext:
+def fault_context(subject: Subject, library: Library) -> FaultContext:
     """Return what every suspect would make of a reading at the sheet's own temperature."""
-    kelvin = reference_temperature(setting.subject.formulation)
+    setting = setting_of(subject, library)
+    kelvin = reference_temperature(subject.formulation)
     suspects = suspects_of(setting, kelvin)
     sized: list[tuple[float, str]] = []
     ranging: list[tuple[float, str, str]] = []

@@ -44,7 +44,6 @@ from bufferfolio.search_words import reagent_words, searchable
 from bufferfolio.sheets import Sheet, Side
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import state_at
-from bufferfolio.substitutes import setting_of
 from bufferfolio.temperature import constants_at
 
 
@@ -169,7 +168,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
         sides=tuple(_side(sheet, side) for side in sheet.sides),
-        faults=fault_context(setting_of(subject, library)),
+        faults=fault_context(subject, library),
         constants=constants,
         pairs=pairs,
         pairs_possible=_possible_pairs(subject.mixture),

@@ -110,10 +110,11 @@
     if (found.nothing_wrong) {
       const hidden = fitting === 0 ? "" : " " + fitting + " of " + all +
         " would read the same within the band, and such a reading cannot tell them.";
-      const right = readings === 1 ? "The reading is" : "Both readings are";
+      const right = readings === 1
+        ? "the reading tells: it is" : "both readings tell: they are";
       return {
         mark: "✓", state: "right",
-        words: "Nothing is wrong. " + right + " as expected of a right batch." + hidden,
+        words: "Nothing is wrong, as far as " + right + " as expected of a right batch." + hidden,
       };
     }
     if (found.none_fits) {

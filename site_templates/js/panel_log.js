@@ -13,7 +13,7 @@
     const root = document.querySelector("[data-log=sheet]");
     if (root === null) return null;
     const part = (name) => root.querySelector('[data-log="' + name + '"]');
-    const { title, key, revision, fingerprint } = root.dataset;
+    const { title, key, revision, fingerprint } = data;
     const view = {
       sheet: { title, key, revision, fingerprint }, outcomes, situation: null,
       store: bf.panel_log_store.opened(), deleted: null,
