@@ -20,14 +20,8 @@ from bufferfolio import resources
 from bufferfolio.definitions import Library
 from bufferfolio.formatting import celsius, chemical, fixed, milli, percent, significant
 from bufferfolio.hazards import STATEMENTS
-from bufferfolio.pages import (
-    FIRST_SCRIPT,
-    INDEX_SCRIPTS,
-    SCRIPTS,
-    SHEET_SCRIPTS,
-    PageReport,
-    write_site,
-)
+from bufferfolio.page_scripts import FIRST_SCRIPT, INDEX_SCRIPTS, SCRIPTS, SHEET_SCRIPTS
+from bufferfolio.pages import PageReport, write_site
 from bufferfolio.search_words import typed
 from bufferfolio.sheets import Sheet, sheet_of
 from bufferfolio.temperature import pK_at

@@ -21,6 +21,7 @@ from bufferfolio.figure_styles import stylesheet
 from bufferfolio.formatting import FILTERS
 from bufferfolio.make_up_contexts import hazard_rows
 from bufferfolio.page_parts import numbering
+from bufferfolio.page_scripts import FIRST_SCRIPT, INDEX_SCRIPTS, SCRIPTS, SHEET_SCRIPTS
 from bufferfolio.published import PublishedTable
 from bufferfolio.reagent_contexts import ReagentRow, reagent_rows
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
@@ -229,98 +230,3 @@ SECTIONS: Final = (
     Section(key="evidence", label="Evidence", path="evidence.html"),
     Section(key="method", label="Method", path="method.html"),
 )
-
-# Each after those that it needs as soon as it is read.
-SCRIPTS: Final = (
-    "water",
-    "temperature",
-    "activity",
-    "speciation",
-    "balance",
-    "newton",
-    "bracketing",
-    "equilibrium",
-    "composition",
-    "buffering",
-    "titration",
-    "subjects",
-    "recipes",
-    "sensitivities",
-    "uncertainty",
-    "reserves",
-    "measurements",
-    "judging",
-    "dosing",
-    "gases",
-    "air",
-    "suspects",
-    "faults",
-    "weighing",
-    "field_checks",
-    "sheets",
-    "explorations",
-    "figure_ticks",
-    "line_paths",
-    "contours",
-    "label_places",
-    "figures",
-    "figure_layout",
-    "svg_figures",
-    "bokeh_figures",
-    "formatting",
-    "fault_words",
-    "figure_tables",
-    "figure_csv",
-    "plots",
-    "explorer_plots",
-    "panel_state",
-    "panel_checks",
-    "panel_inputs",
-    "panel_answers",
-    "panel_bokeh",
-    "panel_tools",
-    "panel_tables",
-    "panel_figures",
-    "band_words",
-    "panel_copy",
-    "panel_judging",
-    "panel_dosing",
-    "panel_fault_rows",
-    "panel_fault",
-    "panel_log_entries",
-    "panel_log_store",
-    "panel_log",
-    "panel_field",
-    "panel",
-)
-
-# What a sheet needs besides for a titration of one's own, before anything of the panel.
-TITRATION_SCRIPTS: Final = (
-    "measured_layout",
-    "measured",
-    "experiments",
-    "linear",
-    "curve_derivatives",
-    "fit_parameters",
-    "fit_model",
-    "fit_quality",
-    "fitting",
-    "end_points",
-    "gran",
-    "fit_words",
-    "measured_plots",
-)
-_PANEL: Final = SCRIPTS.index("panel_state")
-SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])
-
-INDEX_SCRIPTS: Final = (
-    "panel_state",
-    "panel_index",
-    "panel_tools",
-    "panel_log_entries",
-    "panel_log_store",
-    "panel_log_index",
-)
-
-# What every page reads first, before it is shown.
-FIRST_SCRIPT: Final = "panel_contrast"

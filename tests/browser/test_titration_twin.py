@@ -23,7 +23,7 @@ from bufferfolio.fitting import fit
 from bufferfolio.gran import gran_lines
 from bufferfolio.measured import parsed, told
 from bufferfolio.measured_plots import measured_figure
-from bufferfolio.pages import SHEET_SCRIPTS
+from bufferfolio.page_scripts import SHEET_SCRIPTS
 from bufferfolio.subjects import subject_of
 from bufferfolio.svg_figures import svg
 from measured_cases import CASES
