@@ -155,6 +155,20 @@ def test_colours_can_be_read(page: str) -> None:
     assert all(contrast(getattr(style, page), ink) >= 4.5 for style in (*BAND_COLOURS,))
 
 
+def test_colours_for_sunlight_hold_seven_to_one() -> None:
+    """WCAG 2.2, 1.4.6 (text 7 : 1): lines carry coloured names; words stand on every band."""
+    surfaces = {each.name: each.stark for each in SURFACES}
+    surface, ink = surfaces["figure-surface"], surfaces["figure-ink"]
+    assert (surface, ink) == ("#ffffff", "#000000")
+    assert all(contrast(style.stark, surface) >= 7.0 for style in STYLES)
+    assert contrast(surfaces["figure-frame"], surface) >= 7.0
+    assert contrast(surfaces["figure-mark"], surface) >= 7.0
+    assert all(contrast(style.stark or style.light, ink) >= 7.0 for style in BAND_COLOURS)
+    sheet = stylesheet()
+    assert "@media screen{:root[data-contrast=high]{--figure-surface:#ffffff;" in sheet
+    assert f"--s4:{STYLES[4].stark};" in sheet
+
+
 def test_no_two_series_share_a_dash() -> None:
     assert len({style.dash for style in STYLES}) == len(STYLES)
 

@@ -20,7 +20,8 @@ from bufferfolio import resources
 from bufferfolio.definitions import Library
 from bufferfolio.formatting import celsius, chemical, fixed, milli, percent, significant
 from bufferfolio.hazards import STATEMENTS
-from bufferfolio.pages import INDEX_SCRIPTS, SCRIPTS, SHEET_SCRIPTS, PageReport, write_site
+from bufferfolio.page_scripts import EXPLORER_SCRIPTS, FIRST_SCRIPT, INDEX_SCRIPTS, SHEET_SCRIPTS
+from bufferfolio.pages import PageReport, write_site
 from bufferfolio.search_words import typed
 from bufferfolio.sheets import Sheet, sheet_of
 from bufferfolio.temperature import pK_at
@@ -91,7 +92,8 @@ def test_a_page_forbids_the_network_and_holds_no_code(folio: Site, name: str) ->
     assert policy.attributes["content"] == POLICY
     for script in page.all("script"):
         inline = script.attributes.get("type") == "application/json"
-        assert inline or ("defer" in script.attributes and not script.children)
+        first = script.attributes.get("src", "").endswith(f"assets/{FIRST_SCRIPT}.js")
+        assert inline or ((first or "defer" in script.attributes) and not script.children)
     handlers = {n for element in page.walk() for n in element.attributes if n.startswith("on")}
     assert not handlers
     # The only address of the world outside is in words: no reader is sent there by a link.
@@ -170,11 +172,18 @@ def test_nothing_half_made_shows(folio: Site, name: str) -> None:
 
 def test_every_script_is_linked_and_served(folio: Site) -> None:
     there = {path.stem for path in (resources.templates() / "js").glob("*.js")}
-    assert {*SHEET_SCRIPTS, *INDEX_SCRIPTS} == there
-    expected = {"formulations/tris-assay.html": SHEET_SCRIPTS, "families/tris.html": SCRIPTS}
+    assert {FIRST_SCRIPT, *SHEET_SCRIPTS, *INDEX_SCRIPTS} == there
+    expected = {
+        "formulations/tris-assay.html": SHEET_SCRIPTS,
+        "families/tris.html": EXPLORER_SCRIPTS,
+    }
     for name, scripts in expected.items():
         linked = [s.attributes["src"] for s in folio.pages[name].all("script", defer="")]
         assert linked == [f"../assets/{script}.js" for script in scripts]
+    for page in folio.pages.values():
+        first = next(each for each in page.all("script") if "src" in each.attributes)
+        assert first.attributes["src"].endswith(f"assets/{FIRST_SCRIPT}.js")
+        assert "defer" not in first.attributes
     assets = {path.name for path in (folio.folder / "assets").iterdir()}
     shared = {"site.css", "bokeh.min.js", "skeletons.js"}
     assert assets == {*shared, *(f"{script}.js" for script in there)}

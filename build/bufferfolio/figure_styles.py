@@ -3,10 +3,9 @@
 Colours come in pairs, for light and for dark pages, and reach the drawings as CSS custom
 properties: one drawing serves both, and print. Every colour holds 4.5 : 1 against its surface, so
 labels may wear it; every line style has a dash pattern and a mark of its own, so none needs its
-colour.
+colour. A third set, for bright sunlight, holds 7 : 1 on white.
 """
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Final
 
@@ -18,6 +17,7 @@ class Style:
     light: str  # colour on a light page
     dark: str  # colour on a dark page
     dash: tuple[int, ...]  # lengths of stroke and gap in px; empty: solid
+    stark: str = ""  # colour in bright sunlight; empty: as on a light page
     mark: str = ""  # path of a point about its centre
 
 
@@ -28,21 +28,44 @@ class Surface:
     name: str  # of the custom property
     light: str
     dark: str
+    stark: str
 
 
 STYLES: Final = (
-    Style(light="#1c5fa8", dark="#7db4f0", dash=(), mark="h0"),
-    Style(light="#b5430e", dark="#f39a6b", dash=(10, 4), mark="m-2.7-2.7h5.4v5.4h-5.4z"),
-    Style(light="#0a7659", dark="#5cc9a3", dash=(3, 3), mark="m0-3.7l3.5 6h-7z"),
-    Style(light="#8e3d86", dark="#d99ad3", dash=(11, 3, 2, 3), mark="m0-4l3.6 4-3.6 4-3.6-4z"),
-    Style(light="#856500", dark="#d9b64a", dash=(6, 3), mark="m-2.9-2.9l5.8 5.8m0-5.8l-5.8 5.8"),
+    Style(light="#1c5fa8", dark="#7db4f0", stark="#19579a", dash=(), mark="h0"),
     Style(
-        light="#464e55", dark="#b9c2c9", dash=(11, 3, 2, 3, 2, 3), mark="m-3.7 0h7.4m-3.7-3.7v7.4"
+        light="#b5430e",
+        dark="#f39a6b",
+        stark="#96370b",
+        dash=(10, 4),
+        mark="m-2.7-2.7h5.4v5.4h-5.4z",
     ),
-    Style(light="#a32643", dark="#f08fa2", dash=(2, 5), mark="m0 3.7l3.5-6h-7z"),
-    Style(light="#5146a8", dark="#aea6f5", dash=(16, 5), mark="m-4.2 0h8.4"),
-    Style(light="#5d6c10", dark="#b4c36a", dash=(6, 2, 2, 2), mark="m0-4.2v8.4"),
-    Style(light="#6b4a35", dark="#cfa78c", dash=(4, 6), mark="m-3-3h6l-6 6h6z"),
+    Style(light="#0a7659", dark="#5cc9a3", stark="#086149", dash=(3, 3), mark="m0-3.7l3.5 6h-7z"),
+    Style(
+        light="#8e3d86",
+        dark="#d99ad3",
+        stark="#84387c",
+        dash=(11, 3, 2, 3),
+        mark="m0-4l3.6 4-3.6 4-3.6-4z",
+    ),
+    Style(
+        light="#856500",
+        dark="#d9b64a",
+        stark="#6d5200",
+        dash=(6, 3),
+        mark="m-2.9-2.9l5.8 5.8m0-5.8l-5.8 5.8",
+    ),
+    Style(
+        light="#464e55",
+        dark="#b9c2c9",
+        stark="#464e55",
+        dash=(11, 3, 2, 3, 2, 3),
+        mark="m-3.7 0h7.4m-3.7-3.7v7.4",
+    ),
+    Style(light="#a32643", dark="#f08fa2", stark="#a12542", dash=(2, 5), mark="m0 3.7l3.5-6h-7z"),
+    Style(light="#5146a8", dark="#aea6f5", stark="#5146a8", dash=(16, 5), mark="m-4.2 0h8.4"),
+    Style(light="#5d6c10", dark="#b4c36a", stark="#4f5c0d", dash=(6, 2, 2, 2), mark="m0-4.2v8.4"),
+    Style(light="#6b4a35", dark="#cfa78c", stark="#6b4a35", dash=(4, 6), mark="m-3-3h6l-6 6h6z"),
 )
 
 # From pale to deep on a light page and from deep to bright on a dark one: the order survives a
@@ -61,10 +84,10 @@ BAND_COLOURS: Final = (
 )
 
 SURFACES: Final = (
-    Surface(name="figure-surface", light="#ffffff", dark="#12181c"),
-    Surface(name="figure-ink", light="#1b2328", dark="#e4eaed"),
-    Surface(name="figure-frame", light="#66727a", dark="#8d9aa2"),
-    Surface(name="figure-mark", light="#3a444b", dark="#c3ccd2"),
+    Surface(name="figure-surface", light="#ffffff", dark="#12181c", stark="#ffffff"),
+    Surface(name="figure-ink", light="#1b2328", dark="#e4eaed", stark="#000000"),
+    Surface(name="figure-frame", light="#66727a", dark="#8d9aa2", stark="#000000"),
+    Surface(name="figure-mark", light="#3a444b", dark="#c3ccd2", stark="#000000"),
 )
 
 FONT: Final = "system-ui, -apple-system, 'Segoe UI', Roboto, 'Noto Sans', sans-serif"
@@ -72,8 +95,7 @@ FONT: Final = "system-ui, -apple-system, 'Segoe UI', Roboto, 'Noto Sans', sans-s
 
 def stylesheet() -> str:
     """Return the CSS that static figures and their legends need, custom properties first."""
-    light = _properties([(each.name, each.light) for each in SURFACES], "light")
-    dark = _properties([(each.name, each.dark) for each in SURFACES], "dark")
+    light, dark, stark = (_properties(page) for page in ("light", "dark", "stark"))
     series = [_series_rules(index, style.dash) for index, style in enumerate(STYLES)]
     bands = [
         f"svg.figure .m{index}{{fill:var(--m{index})}}\n"
@@ -82,16 +104,23 @@ def stylesheet() -> str:
     ]
     # "screen": a page printed from a dark screen is still ink on white paper.
     screens = f"@media screen and (prefers-color-scheme:dark){{:root{{{dark}}}}}"
-    return "\n".join([f":root{{{light}}}", screens, *RULES, *series, *bands]) + "\n"
+    stark += f"--figure-line:{STARK_LINE};"
+    sunlight = f"@media screen{{:root[data-contrast=high]{{{stark}}}{' '.join(STARK_RULES)}}}"
+    light += f"--figure-line:{LINE};"
+    return "\n".join([f":root{{{light}}}", screens, sunlight, *RULES, *series, *bands]) + "\n"
 
 
-def _properties(surfaces: Sequence[tuple[str, str]], page: str) -> str:
-    def colour(style: Style) -> str:
-        return style.light if page == "light" else style.dark
+def _properties(page: str) -> str:
+    named: list[tuple[str, Style | Surface]] = [
+        *((each.name, each) for each in SURFACES),
+        *((f"s{index}", style) for index, style in enumerate(STYLES)),
+        *((f"m{index}", style) for index, style in enumerate(BAND_COLOURS)),
+    ]
+    return "".join(f"--{name}:{_colour(each, page)};" for name, each in named)
 
-    series = [(f"s{index}", colour(style)) for index, style in enumerate(STYLES)]
-    bands = [(f"m{index}", colour(style)) for index, style in enumerate(BAND_COLOURS)]
-    return "".join(f"--{name}:{value};" for name, value in [*surfaces, *series, *bands])
+
+def _colour(each: Style | Surface, page: str) -> str:
+    return {"light": each.light, "dark": each.dark, "stark": each.stark or each.light}[page]
 
 
 def _series_rules(index: int, dash: tuple[int, ...]) -> str:
@@ -102,6 +131,16 @@ def _series_rules(index: int, dash: tuple[int, ...]) -> str:
         f"svg.figure .t{index}{{fill:var(--s{index})}}"
     )
 
+
+LINE: Final = 2.2  # px, width of lines
+STARK_LINE: Final = 3.2  # in bright sunlight
+
+# Thicker where shade alone would not carry; their selectors win over those of RULES.
+STARK_RULES: Final = (
+    ":root[data-contrast=high] svg.figure .frame{stroke-width:1.6}",
+    ":root[data-contrast=high] svg.figure :is(.mark,.iso){stroke-width:1.6}",
+    ":root[data-contrast=high] svg.figure text{font-weight:600}",
+)
 
 RULES: Final = (
     "svg.figure{display:block;width:100%;height:auto;color:var(--figure-ink)}",
@@ -114,7 +153,7 @@ RULES: Final = (
     "svg.figure .name{font-weight:600}",
     "svg.figure path{fill-rule:evenodd}",
     "svg.figure .frame{fill:none;stroke:var(--figure-frame);stroke-width:1}",
-    "svg.figure .line{fill:none;stroke-width:2.2;stroke-linejoin:round}",
+    "svg.figure .line{fill:none;stroke-width:var(--figure-line);stroke-linejoin:round}",
     "svg.figure path.point{fill-rule:nonzero;stroke-width:1.5;stroke-dasharray:none}",
     # A point of no length, as wide as its stroke.
     "svg.figure path.point.s0{stroke-width:6.5;stroke-linecap:round}",

@@ -21,6 +21,7 @@ from bufferfolio.figure_styles import stylesheet
 from bufferfolio.formatting import FILTERS
 from bufferfolio.make_up_contexts import hazard_rows
 from bufferfolio.page_parts import numbering
+from bufferfolio.page_scripts import EXPLORER_SCRIPTS, FIRST_SCRIPT, INDEX_SCRIPTS, SHEET_SCRIPTS
 from bufferfolio.published import PublishedTable
 from bufferfolio.reagent_contexts import ReagentRow, reagent_rows
 from bufferfolio.sheet_contexts import SheetContext, sheet_context
@@ -168,7 +169,7 @@ def _write_explorers(
     writer: Writer, library: Library, numbers: Mapping[str, int], progress: Progress
 ) -> tuple[FamilyContext, ...]:
     contexts = []
-    shell = Shell(page="explorer", section="families", top="../", scripts=SCRIPTS)
+    shell = Shell(page="explorer", section="families", top="../", scripts=EXPLORER_SCRIPTS)
     for key, family in sorted(library.families.items()):
         progress(family.label)
         context = family_context(exploration_of(family), library, numbers)
@@ -189,7 +190,7 @@ def write_assets(folder: Path) -> None:
     files = sorted((templates / "css").glob("*.css"), key=lambda path: (path.stem != "site", path))
     style = "".join(path.read_text(encoding="utf-8") for path in files)
     (folder / "site.css").write_text(style + stylesheet(), encoding="utf-8", newline="\n")
-    for name in sorted({*SHEET_SCRIPTS, *INDEX_SCRIPTS}):
+    for name in sorted({FIRST_SCRIPT, *SHEET_SCRIPTS, *INDEX_SCRIPTS}):
         script = (templates / "js" / f"{name}.js").read_text(encoding="utf-8")
         (folder / f"{name}.js").write_text(script, encoding="utf-8", newline="\n")
     (folder / "skeletons.js").write_text(skeletons_script(), encoding="utf-8", newline="\n")
@@ -208,6 +209,7 @@ def environment_of(templates: Path) -> Environment:
     )
     environment.filters.update(FILTERS)
     environment.globals["sections"] = SECTIONS
+    environment.globals["first_script"] = FIRST_SCRIPT
     return environment
 
 
@@ -228,91 +230,3 @@ SECTIONS: Final = (
     Section(key="evidence", label="Evidence", path="evidence.html"),
     Section(key="method", label="Method", path="method.html"),
 )
-
-# Each after those that it needs as soon as it is read.
-SCRIPTS: Final = (
-    "water",
-    "temperature",
-    "activity",
-    "speciation",
-    "balance",
-    "newton",
-    "bracketing",
-    "equilibrium",
-    "composition",
-    "buffering",
-    "titration",
-    "subjects",
-    "recipes",
-    "sensitivities",
-    "uncertainty",
-    "reserves",
-    "measurements",
-    "judging",
-    "dosing",
-    "gases",
-    "air",
-    "suspects",
-    "faults",
-    "weighing",
-    "weighed_batch",
-    "field_checks",
-    "sheets",
-    "explorations",
-    "figure_ticks",
-    "line_paths",
-    "contours",
-    "label_places",
-    "figures",
-    "figure_layout",
-    "svg_figures",
-    "bokeh_figures",
-    "formatting",
-    "figure_tables",
-    "figure_csv",
-    "plots",
-    "explorer_plots",
-    "make_up_words",
-    "panel_state",
-    "panel_checks",
-    "panel_inputs",
-    "panel_answers",
-    "panel_bokeh",
-    "panel_tools",
-    "panel_tables",
-    "panel_figures",
-    "band_words",
-    "panel_copy",
-    "panel_judging",
-    "panel_dosing",
-    "panel_make_up",
-    "panel_field",
-    "panel",
-)
-
-# What a sheet needs besides for a titration of one's own; none asks for the panel as it is read.
-TITRATION_SCRIPTS: Final = (
-    "measured_layout",
-    "measured",
-    "experiments",
-    "linear",
-    "curve_derivatives",
-    "fit_parameters",
-    "fit_model",
-    "fit_quality",
-    "fitting",
-    "end_points",
-    "gran",
-    "fit_words",
-    "measured_plots",
-    "titration_example",
-    "titration_tables",
-    "panel_titration_points",
-    "panel_titration_show",
-    "panel_titration_fit",
-    "panel_titration",
-)
-_PANEL: Final = SCRIPTS.index("panel_state")
-SHEET_SCRIPTS: Final = (*SCRIPTS[:_PANEL], *TITRATION_SCRIPTS, *SCRIPTS[_PANEL:])
-
-INDEX_SCRIPTS: Final = ("panel_state", "panel_index")

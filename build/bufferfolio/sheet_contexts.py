@@ -15,6 +15,7 @@ from bufferfolio.definitions import Family, Formulation, Library, Reagent
 from bufferfolio.engine_data import Data, sheet_data
 from bufferfolio.equilibrium import Status
 from bufferfolio.estimate_words import EstimateWords, estimate_words
+from bufferfolio.fault_contexts import FaultContext, fault_context
 from bufferfolio.field_data import field_data, ways_to
 from bufferfolio.figures import Figure, as_data
 from bufferfolio.formatting import chemical, mass, volume
@@ -109,6 +110,7 @@ class SheetContext:
     species: tuple[SpeciesGroup, ...]
     plots: tuple[Plot, ...]
     sides: tuple[SideRow, ...]
+    faults: FaultContext
     constants: tuple[ConstantRow, ...]
     pairs: tuple[PairRow, ...]
     pairs_possible: int  # of a cation and an anion, titrants included
@@ -160,6 +162,7 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
         species=_species(sheet),
         plots=tuple(plot_of(figure) for figure in figures),
         sides=tuple(_side(sheet, side) for side in sheet.sides),
+        faults=fault_context(subject, library),
         constants=constants,
         pairs=pairs,
         pairs_possible=_possible_pairs(subject.mixture),

@@ -113,6 +113,7 @@
       parts.between.glyph.line_color = look.frame;
       parts.limits.glyph.line_color = look.mark;
     }
+    for (const line of parts.lines || []) line.glyph.line_width = look.line;
     // Lines, bands and words carry colours with their data.
     fillInside(handle, handle.figure);
   }
@@ -322,6 +323,7 @@
     return {
       surface: colour("figure-surface"), ink: colour("figure-ink"),
       frame: colour("figure-frame"), mark: colour("figure-mark"),
+      line: Number(colour("figure-line")),
       series: (at) => colour("s" + (at % bf.figures.STYLES)),
       band: (at) => colour("m" + at),
       font: style.fontFamily,

@@ -36,7 +36,11 @@
    */
   function fieldOf(data) {
     const field = { data, sections: [], outcomes: {}, frame: 0 };
-    for (const name of ["panel_judging", "panel_dosing", "panel_make_up", "panel_titration"]) {
+    const names = [
+      "panel_make_up", "panel_judging", "panel_dosing", "panel_fault", "panel_titration",
+      "panel_log",
+    ];
+    for (const name of names) {
       const section = bf[name].open(data, field.outcomes);
       if (section !== null) field.sections.push(section);
     }

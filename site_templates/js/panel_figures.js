@@ -87,6 +87,7 @@
       });
     }
     matchMedia("(prefers-color-scheme: dark)").addEventListener("change", () => recolour(stage));
+    addEventListener("bufferfolio-contrast", () => recolour(stage));
     addEventListener("resize", () => recolour(stage));
   }
 

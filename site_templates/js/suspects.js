@@ -292,5 +292,7 @@
       .replace("{other}", () => suspected.other);
   }
 
-  bf.suspects = { KINDS, settingOf, suspectsOf, extentAt, sceneOf, altered, readAs, wordsOf };
+  bf.suspects = {
+    KINDS, EVEN, settingOf, suspectsOf, extentAt, sceneOf, altered, readAs, wordsOf,
+  };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

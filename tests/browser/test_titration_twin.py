@@ -23,7 +23,7 @@ from bufferfolio.fitting import fit
 from bufferfolio.gran import gran_lines
 from bufferfolio.measured import parsed, told
 from bufferfolio.measured_plots import measured_figure
-from bufferfolio.pages import SHEET_SCRIPTS
+from bufferfolio.page_scripts import PURE_SCRIPTS
 from bufferfolio.subjects import subject_of
 from bufferfolio.svg_figures import svg
 from measured_cases import CASES
@@ -32,7 +32,7 @@ from recipes import shipped
 from sample_figures import random_figures
 
 # In the order in which a page loads them.
-SCRIPTS: Final = SHEET_SCRIPTS[: SHEET_SCRIPTS.index("panel_state")]
+SCRIPTS: Final = PURE_SCRIPTS
 LIMIT: Final = 1e-6
 
 HELPERS: Final = """
