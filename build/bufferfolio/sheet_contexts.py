@@ -143,9 +143,8 @@ def sheet_context(sheet: Sheet, library: Library, numbers: Mapping[str, int]) ->
     bench = bench_of(subject, library, ways)
     data = _engine_data(sheet, batch, ways, library)
     identity = _identity(formulation, json_text(data))
-    data |= identity
-    data["shelf"] = bench.shelf
-    data["figures"] = {figure.key: as_data(figure) for figure in figures}
+    drawn = {figure.key: as_data(figure) for figure in figures}
+    data |= {**identity, "shelf": bench.shelf, "figures": drawn}
     reagents = reagents_of(formulation)
     return SheetContext(
         formulation=formulation,
