@@ -81,7 +81,7 @@
         caption, second: "", leading: [], all: [], rest: "",
       };
     }
-    const rows = (each) => each.map((one) => rowOf(setting.subject, one, readings));
+    const rows = (each) => each.map((one) => rowOf(setting.subject, one));
     const list = sorted(found).filter(({ suspect }) => suspect.kind !== "nothing");
     const leading = leadingOf(found, list);
     return {
@@ -134,14 +134,12 @@
     };
   }
 
-  function rowOf(subject, explanation, readings) {
+  function rowOf(subject, explanation) {
     const { suspect, extent, predicted, misfit, weight } = explanation;
     const fit = FITS.find(({ to }) => misfit <= to) || FITS[FITS.length - 1];
-    const both = predicted.map((pH, at) =>
-      number(pH) + " (read " + number(readings[at].pH) + ")");
     return {
       words: bf.fault_words.said(subject, suspect, extent),
-      predicted: both.join(", then "),
+      predicted: predicted.map(number).join(", then "),
       mark: fit.mark,
       fit: fit.words,
       share: shareText(weight),
