@@ -20,7 +20,8 @@ from published_tables import rows_of
 from recipes import shipped
 
 FORMULATIONS = sorted(shipped().formulations)
-DOSED = sorted({*FORMULATIONS} - {"plain-water"})
+CHECKS = [key for key in FORMULATIONS if key.startswith("meter-check-")]
+DOSED = sorted({*FORMULATIONS} - {"plain-water", *CHECKS})
 
 
 def changed(key: str, **fields: object) -> Formulation:
@@ -76,13 +77,14 @@ def test_doses_are_corrections_and_grow_with_the_distance(key: str) -> None:
         assert portions == sorted(set(portions))
 
 
-def test_only_plain_water_is_never_corrected() -> None:
+def test_only_plain_water_and_meter_checks_are_never_corrected() -> None:
     refused = [
         key
         for key in FORMULATIONS
         if all(each.dose.refusal for each in card_of(subject(key), 2, 2).corrections)
     ]
-    assert refused == ["plain-water"]
+    assert len(CHECKS) == 8
+    assert refused == [*CHECKS, "plain-water"]
 
 
 @pytest.mark.parametrize("key", DOSED)
@@ -162,8 +164,9 @@ def phosphate(hydroxide: float) -> Subject:
         temperature=20.0 + ZERO_CELSIUS,
         portions=portions,
     )
-    changes = {"make_up": make_up, "expected": None, "use_pH": Interval(low=5.5, high=8.5)}
-    return subject_of(replace(form, **changes), shipped())
+    changes = {"make_up": make_up, "expected": None, "never_corrected": False}
+    wide = Interval(low=5.5, high=8.5)
+    return subject_of(replace(form, use_pH=wide, **changes), shipped())
 
 
 @pytest.mark.parametrize(

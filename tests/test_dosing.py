@@ -43,7 +43,7 @@ TRIS = subject("tris-assay")
 @pytest.mark.parametrize("key", FORMULATIONS)
 def test_a_correction_leads_to_its_target(key: str) -> None:
     """Both ways, from readings inside the limits of use; what is refused says why."""
-    this = subject(key)
+    this = subject(key, never_corrected=False)
     kelvin, use = reference_temperature(this.formulation), this.formulation.use_pH
     target = target_at(this, kelvin)
     for pH in (0.6 * target + 0.4 * use.low, 0.6 * target + 0.4 * use.high):
@@ -163,9 +163,21 @@ def test_a_titrant_that_never_arrives_is_refused() -> None:
     assert corrected(this, batch(8.4), target=9.9).refusal == "never"
 
 
+def test_what_is_never_corrected_keeps_its_reserve() -> None:
+    """Meter-check buffers: common practice, no source."""
+    this = subject("meter-check-phosphate")
+    found = corrected(this, Batch(temperature=ROOM, pH=6.82, volume=1e-3))
+    assert found.refusal == "forbidden"
+    assert math.isnan(found.whole.moles)
+    assert [each.direction for each in found.reserves] == ["downward", "upward"]
+    assert all(each.before > 0.0 for each in found.reserves)
+    reached = corrected(this, Batch(temperature=ROOM, pH=6.865, volume=1e-3))
+    assert reached.refusal == "reached"
+
+
 def test_every_refusal_has_words() -> None:
     expected = {"impossible", "target", "reached", "no titrant", "direction", "dangers", "reserve"}
-    assert set(REFUSALS) == expected | {"dilute", "never", "doubles", "little"}
+    assert set(REFUSALS) == expected | {"forbidden", "dilute", "never", "doubles", "little"}
     assert all(words.endswith(".") for words in REFUSALS.values())
 
 

@@ -285,6 +285,7 @@ WORDS: Final[Mapping[str, str]] = {
     "little": "too little",
 }
 SENTENCES: Final[Mapping[str, str]] = {
+    "forbidden": "Never correct it: a batch outside its tolerance is thrown away. Make it anew.",
     "no titrant": "Do not correct: the formulation names no reagent for this side.",
     "dangers": "Do not correct: the reagent may set a toxic gas free from the batch.",
     "dilute": "Do not correct: this water buffers so little that air and glass move it more than "

@@ -218,6 +218,7 @@ class Formulation:
     cautions: tuple[str, ...]
     accepted_dangers: tuple[str, ...]  # dangerous combinations the file explains
     tolerances: Tolerances = Tolerances()
+    never_corrected: bool = False  # the titrants then only show its reserve
     place: Place
 
 

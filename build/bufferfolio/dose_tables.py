@@ -84,8 +84,9 @@ def doses(subject: Subject, cases: Sequence[Case]) -> tuple[DoseRow, ...]:
 
 
 def _rows(subject: Subject, titrant: int, cases: Sequence[Case]) -> list[DoseRow]:
-    accepted = subject.formulation.accepted_dangers
-    if set(dangers_of(subject, titrant)) - set(accepted):
+    formulation = subject.formulation
+    accepted = set(formulation.accepted_dangers)
+    if formulation.never_corrected or set(dangers_of(subject, titrant)) - accepted:
         return [_asked(subject, case) for case in cases]
     amounts = _amounts(subject, subject.additions[titrant], cases)
     return [

@@ -172,6 +172,8 @@ def _refusal(
         return "target"
     if abs(aim - batch.pH) < NOTHING_TO_DO:
         return "reached"
+    if subject.formulation.never_corrected:
+        return "forbidden"
     if chosen < 0:
         return "no titrant"
     if (subject.formulation.titrants[chosen].direction == "upward") != (aim > batch.pH):
@@ -238,6 +240,8 @@ REFUSALS: Final[Mapping[str, str]] = {
     "would be another one. Check the electrode, and that it stands in the right batch.",
     "target": "The target lies outside the limits of use.",
     "reached": "The batch is at its target. Nothing is to be added.",
+    "forbidden": "Its author says that a batch is never corrected: one that is outside its "
+    "tolerance is thrown away. Make it anew.",
     "no titrant": "The formulation names no reagent that moves the pH in this direction.",
     "direction": "This reagent moves the pH away from the target. Choose another one.",
     "dangers": "This reagent may set a toxic gas free from the batch. Do not add it.",

@@ -95,6 +95,7 @@ def subject_data(subject: Subject) -> Data:
         "care": _care_data(subject.care),
         "doubts": {"pKw": ASSUMED["pKw"].value, "activity": ASSUMED["activity"].value},
         "accepted_dangers": list(formulation.accepted_dangers),
+        "never_corrected": formulation.never_corrected,
         "reference_temperature": reference_temperature(formulation),
         "make_up_temperature": formulation.make_up.temperature,
     }

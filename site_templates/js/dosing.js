@@ -33,6 +33,9 @@
       "would be another one. Check the electrode, and that it stands in the right batch.",
     target: "The target lies outside the limits of use.",
     reached: "The batch is at its target. Nothing is to be added.",
+    forbidden:
+      "Its author says that a batch is never corrected: one that is outside its tolerance " +
+      "is thrown away. Make it anew.",
     "no titrant": "The formulation names no reagent that moves the pH in this direction.",
     direction: "This reagent moves the pH away from the target. Choose another one.",
     dangers: "This reagent may set a toxic gas free from the batch. Do not add it.",
@@ -167,6 +170,7 @@
     if (!(Math.abs(found.excess) <= MOST_EXCESS)) return "impossible";
     if (!(low <= aim && aim <= high)) return "target";
     if (Math.abs(aim - batch.pH) < NOTHING_TO_DO) return "reached";
+    if (subject.never_corrected) return "forbidden";
     if (chosen < 0) return "no titrant";
     if ((subject.additions[chosen].direction === "upward") !== aim > batch.pH) return "direction";
     if (dangers.some((danger) => !subject.accepted_dangers.includes(danger))) return "dangers";

@@ -14,6 +14,7 @@
  * @property {Record<string, any>} care tolerances, and in `stated` those that the file states
  * @property {{pKw: number, activity: number}} doubts of pKw and of activity models, k = 2
  * @property {string[]} accepted_dangers
+ * @property {boolean} never_corrected
  * @property {number} reference_temperature K
  * @property {number} make_up_temperature K
  *
@@ -50,6 +51,7 @@
       care: data.care,
       doubts: data.doubts,
       accepted_dangers: data.accepted_dangers,
+      never_corrected: data.never_corrected,
       reference_temperature: data.reference_temperature,
       make_up_temperature: data.make_up_temperature,
     };

@@ -87,8 +87,8 @@ READ: Final = """
 """
 
 # One input: until its handlers have ended (numbers stand on the page and are laid out), until the
-# sections that may be late have answered in the next frame, until the first figure has been painted,
-# and until all have.
+# sections that may be late have answered in the next frame, until the first figure has been
+# painted, and until all have.
 UPDATE: Final = """
   ([value, figures]) => new Promise((resolve) => {
     const slider = document.querySelector("[type=range][data-input=temperature]");

@@ -63,6 +63,7 @@ def formulation(
         cautions=tuple(shape.cautions),
         accepted_dangers=tuple(shape.explains),
         tolerances=_tolerances(shape),
+        never_corrected=shape.corrected == "never",
         place=document.root.place,
     ), complaints
 

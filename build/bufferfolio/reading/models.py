@@ -250,6 +250,11 @@ class FormulationShape(Shape):
     expected: ExpectedShape | None = Field(None, description="The pH it is meant to have.")
     use: UseShape = Field(description="The temperatures and the pH within which it may be used.")
     correct_with: list[TitrantShape] = Field([], description="What corrects a batch.")
+    corrected: Literal["never"] | None = Field(
+        default=None,
+        description="Whether a batch that is off may be corrected; `never` keeps the titrants to "
+        "show its reserve only.",
+    )
     tolerances: TolerancesShape | None = Field(
         None, description="How well it is weighed, measured and read; usual values without it."
     )
