@@ -91,8 +91,8 @@ def test_a_liquid_is_weighed_where_the_file_states_a_mass(
     row = portion_rows(subject, numbering(shipped().sources))[1]
     assert (row.stated, row.amount) == (stated, shown)
     assert formulation.make_up.portions[1].weighed == weighed
-    given = subject_data(subject)["portions"][1]  # type: ignore[index]
-    assert (given["density"] is None) == weighed
+    given = subject_data(subject)["recipe"]["parts"][1]  # type: ignore[index]
+    assert (given["added"]["volume"] is None) == weighed
 
 
 def test_a_solid_is_weighed_whatever_its_file_states(tmp_path: Path) -> None:

@@ -95,7 +95,7 @@ def test_a_reagent_doubled_is_found_and_a_second_reading_sharpens(
     assert share(row) > before
     page.locator('[data-fault="summary"]').click()
     every = page.locator('[data-fault="every"] tr')
-    assert every.count() == len(suspects_of(tris, ROOM)) - 1
+    expect(every).to_have_count(len(suspects_of(tris, ROOM)) - 1)
     assert page.evaluate("document.scrollingElement.scrollWidth - innerWidth") <= 0
     if width == 390:
         assert violations(page) == []
