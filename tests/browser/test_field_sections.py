@@ -193,6 +193,13 @@ def test_a_correction_that_is_unwise_is_refused_with_a_reason(visitor: Visitor) 
     assert dose(page, "first").endswith((" L", " m³"))
 
 
+def test_what_is_never_corrected_shows_its_reserve_only(visitor: Visitor) -> None:
+    page = visitor.open("formulations/meter-check-phosphate.html", "#reading=6.83")
+    assert dose(page, "words") == DOSING_REFUSALS["forbidden"]
+    assert "mmol/kg" in page.locator('[data-dose="now_upward"]').inner_text()
+    expect(page.locator("[data-dosing]")).to_contain_text("is never corrected")
+
+
 def test_a_gas_that_may_come_off_is_named(visitor: Visitor) -> None:
     page = visitor.open("formulations/sanitising-bath.html", "#temperature=15&reading=7.4")
     danger = page.locator('[data-dose="dangers"]')
