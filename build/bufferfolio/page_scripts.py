@@ -103,10 +103,11 @@ _SECTIONS: Final = (
     "panel_field",
 )
 
+ENGINE_SCRIPTS: Final = (*_ENGINE, *_FIELD)
 EXPLORER_SCRIPTS: Final = (*_ENGINE, *_PICTURES, *_PANEL, "panel")
 
 # All that needs no page stands before all that does.
-PURE_SCRIPTS: Final = (*_ENGINE, *_FIELD, *_PICTURES, *_WORDS, *_TITRATION)
+PURE_SCRIPTS: Final = (*ENGINE_SCRIPTS, *_PICTURES, *_WORDS, *_TITRATION)
 SHEET_SCRIPTS: Final = (*PURE_SCRIPTS, *_PANEL, *_SECTIONS, "panel")
 
 INDEX_SCRIPTS: Final = (

@@ -11,36 +11,9 @@ import numpy as np
 from playwright.sync_api import Page
 
 from bufferfolio import resources
+from bufferfolio.page_scripts import ENGINE_SCRIPTS
 
-# In order of their layers, as a page loads them.
-ENGINE: Final = (
-    "water",
-    "temperature",
-    "activity",
-    "speciation",
-    "balance",
-    "newton",
-    "bracketing",
-    "equilibrium",
-    "composition",
-    "buffering",
-    "titration",
-    "subjects",
-    "recipes",
-    "sensitivities",
-    "uncertainty",
-    "reserves",
-    "measurements",
-    "judging",
-    "dosing",
-    "gases",
-    "air",
-    "suspects",
-    "faults",
-    "weighing",
-    "field_checks",
-    "band_words",
-)
+ENGINE: Final = (*ENGINE_SCRIPTS, "band_words")
 
 SMALLEST: Final = 1e-12
 

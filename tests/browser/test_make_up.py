@@ -27,7 +27,7 @@ from .readers import SHEET, field
 from .test_accessibility import violations
 
 FORMULATIONS = sorted(shipped().formulations)
-SCRIPTS = (*ENGINE, "weighed_batch", "figure_ticks", "formatting", "panel_state", "make_up_words")
+SCRIPTS = (*ENGINE, "figure_ticks", "formatting", "panel_state", "make_up_words")
 LIMIT = 1e-9
 
 
