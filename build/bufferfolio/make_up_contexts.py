@@ -110,7 +110,10 @@ def correct_context(formulation: Formulation, batch: Batch) -> CorrectContext:
     titrants = enumerate(formulation.titrants)
     return CorrectContext(
         volume=_batch("volume", amount, batch.basis, (US_GALLON,)),
-        choices=(("", "what fits"), *((str(at), titrant.label) for at, titrant in titrants)),
+        choices=(
+            ("", "the one that fits"),
+            *((str(at), titrant.label) for at, titrant in titrants),
+        ),
     )
 
 

@@ -40,8 +40,9 @@
     direction: "This reagent moves the pH away from the target. Choose another one.",
     dangers: "This reagent may set a toxic gas free from the batch. Do not add it.",
     reserve:
-      "The reading lies outside the limits of use: the batch has taken up more than its " +
-      "reserve. A correction would not give back what it has lost. Make it anew.",
+      "The reading lies outside the limits of use. Check the meter first. If the reading " +
+      "stands, the batch has taken up more than its reserve, and a correction would not give back " +
+      "what it has lost: make it anew.",
     dilute:
       "The batch buffers so little that air and glass move it more than a correction can " +
       "hold. Do not correct it.",

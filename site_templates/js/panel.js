@@ -104,7 +104,10 @@
   function answer(page) {
     const reading = bf.panel_inputs.read(page.inputs);
     for (const element of page.living) element.classList.toggle("stale", reading.faulty);
-    if (reading.faulty) return reading;
+    if (reading.faulty) {
+      if (page.field !== null) bf.panel_field.withhold(page.field);
+      return reading;
+    }
     const results = show(page, reading.values);
     if (page.field !== null) bf.panel_field.answer(page.field, reading, results.subject);
     const conditions = conditionsOf(page.inputs, reading.texts);

@@ -5,6 +5,7 @@
   const { celsius, fixed, mass, plain, significant, volume } = bf.formatting;
 
   const ASKED = "Type what the meter reads, above.";
+  const WITHHELD = "A condition above cannot be used; see beside it. Nothing is dosed until it can.";
   const FAULTY = "Something typed here cannot be used; see beside it.";
   const TOO_SMALL = "Give a volume from 1 mL to 100 m³.";
   const SMALLEST = 1e-6; // m3
@@ -13,11 +14,14 @@
   const SHARE = 80; // % of the whole
   const OWN = ["volume", "target", "share", "dilution"];
   const NOTHING = "—";
+  const NONE = { words: "", dangers: "", first: "", now_downward: NOTHING, now_upward: NOTHING };
   // What comes before a correction, by the verdict on the reading.
   const FIRST = {
     right: "The batch is right as it is. If it must be nearer to the target, to",
     accepted: "The batch is accepted as it is. If it must be nearer to the target, to",
     doubtful: "First calibrate the meter and read again. If it stays so, to",
+    off: "First check thermometer and meter. If the reading stands, to",
+    unexpected: "First check thermometer and meter. If the reading stands, to",
   };
 
   /** @param {object} data @returns {Section | null} */
@@ -35,6 +39,10 @@
         write(root, words);
         lines = [...outcomes.judging.lines, ...linesOf(words)];
         return { lines: linesOf(words), facts: factsOf(words) };
+      },
+      withhold() {
+        lines = [];
+        write(root, { ...NONE, words: WITHHELD });
       },
     };
   }
@@ -66,8 +74,7 @@
    * @param {Situation} situation @param {Plan} plan @param {string} verdict of the judgement
    * @returns {Record<string, string>} */
   function wordsOf({ subject, temperature, pH }, { complaint, correction, volume: size }, verdict) {
-    const words = { words: complaint, dangers: "", first: "", now_downward: NOTHING,
-      now_upward: NOTHING };
+    const words = { ...NONE, words: complaint };
     if (correction === null) return words;
     const water = size * bf.water.density(temperature);
     for (const { direction, titrant, before } of correction.reserves) {
@@ -76,7 +83,7 @@
         ? (before === 0 ? "none left" : NOTHING)
         : `${significant(before * MILLI)} mmol/kg: ${amountText(before * water, added)}`;
     }
-    words.dangers = dangersText(subject, correction);
+    words.dangers = dangersText(subject, correction) + gasText(subject, pH);
     if (correction.refusal !== "") {
       words.words = refusalText(correction.refusal);
       return words;
@@ -93,8 +100,25 @@
 
   function dangersText(subject, { dangers, titrant }) {
     if (dangers.length === 0) return "";
-    return `With ${subject.additions[titrant].label} this batch may set free: ` +
-      dangers.join(", ") + ". Small portions, ventilation, and the cautions of this sheet.";
+    return `${subject.additions[titrant].label}: may set free ${namesOf(dangers)}. Small portions, ` +
+      "ventilation, and the cautions of this sheet. ";
+  }
+
+  /** What a batch may be giving off by itself: the gas is there before anybody adds anything. */
+  function gasText(subject, pH) {
+    const { low, high } = subject.use_pH;
+    if (pH >= low && pH <= high) return "";
+    const cause = pH < low ? " with acid" : " with base";
+    const releases = subject.recipe.parts.flatMap((part) => part.releases);
+    const gases = Array.from(new Set(releases)).filter((danger) => danger.endsWith(cause));
+    if (gases.length === 0) return "";
+    return `If this reading is right, the batch may be giving off ${namesOf(gases)}. Keep away, ` +
+      "ventilate, add nothing, and call who is responsible.";
+  }
+
+  /** Gases with what sets them free, in brackets. @param {string[]} dangers */
+  function namesOf(dangers) {
+    return dangers.map((danger) => danger.replace(/ (with .*)$/, " ($1)")).join(", ");
   }
 
   function plannedWords(subject, correction, size) {
@@ -161,5 +185,5 @@
     };
   }
 
-  bf.panel_dosing = { open };
+  bf.panel_dosing = { open, gasText };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

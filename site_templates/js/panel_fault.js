@@ -20,7 +20,14 @@
     bf.panel_copy.open(root.querySelector('[data-action="copy-fault"]'), () => [
       document.querySelector("h1").textContent.trim(), ...view.lines,
     ]);
-    return { name: "fault", late: true, answer: (situation) => answer(view, situation) };
+    return {
+      name: "fault",
+      late: true,
+      answer: (situation) => answer(view, situation),
+      withhold() {
+        waitWith(view, "A condition above cannot be used; see beside it.");
+      },
+    };
   }
 
   /** @returns {Outcome} */
@@ -35,13 +42,9 @@
     view.results.classList.toggle("stale", faulty);
     if (faulty) return { lines: view.lines, facts: {} };
     const given = !Number.isNaN(reading);
-    view.results.hidden = !given;
+    view.results.hidden = false;
     if (!given) {
-      view.lines = [];
-      tell(view.words, NEEDED);
-      tell(view.note, "");
-      view.mark.textContent = "";
-      view.status.dataset.state = "waiting";
+      waitWith(view, NEEDED);
       return { lines: [], facts: {} };
     }
     const found = bf.panel_fault_rows.answerTo(situation);
@@ -49,6 +52,16 @@
     view.lines = bf.panel_fault_rows.linesOf(found);
     const [first] = found.leading;
     return { lines: view.lines, facts: { fault: factOf(found, first), second: found.second } };
+  }
+
+  /** Rank nothing, and say what is missing. */
+  function waitWith(view, words) {
+    view.results.hidden = true;
+    view.lines = [];
+    tell(view.words, words);
+    tell(view.note, "");
+    view.mark.textContent = "";
+    view.status.dataset.state = "waiting";
   }
 
   /** What the log keeps: the leading fault, or that there is none. */
@@ -120,7 +133,7 @@
 
   /** A share of the weight in figures, and as a bar. */
   function shareCell({ share, weight }) {
-    const made = cell("td", "Share of the weight", share);
+    const made = cell("td", "How likely", share);
     const bar = document.createElement("span");
     bar.className = "share-bar";
     bar.setAttribute("aria-hidden", "true");

@@ -87,7 +87,8 @@
     return {
       ...headline(found, list, leading, readings.length), note: missing, caption,
       second: readings.slice(1).map(toldOf).join(""), leading: rows(leading), all: rows(list),
-      rest: "Something that is not on the list: " + shareText(found.unexplained) + " of the weight.",
+      rest: "How likely: among the faults of this list, before anything else is known. Amounts that " +
+        "are off by other shares than those listed, and what nobody thought of, are not on it.",
     };
   }
 
@@ -178,7 +179,7 @@
     if (note !== "") lines.push(note);
     leading.forEach((row, at) => {
       lines.push((at + 1) + ". " + row.words + ": would read " + row.predicted + "; " + row.fit +
-        "; " + row.share + " of the weight. " + row.check);
+        "; " + row.share + " likely. " + row.check);
     });
     if (leading.length > 0) lines.push(rest);
     return lines;

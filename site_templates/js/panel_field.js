@@ -21,6 +21,7 @@
  * @property {string} name
  * @property {boolean} late
  * @property {(situation: Situation, outcomes: Record<string, Outcome>) => Outcome} answer
+ * @property {(() => void) | undefined} withhold takes back what somebody might act on
  *
  * @typedef {{data: object, sections: Section[], outcomes: Record<string, Outcome>,
  *   frame: number}} Field
@@ -59,6 +60,16 @@
     field.frame = requestAnimationFrame(() => ask(field, situation, true));
   }
 
+  /** Take answers back: a condition of the page cannot be used, so that they would mislead.
+   * @param {Field} field
+   */
+  function withhold(field) {
+    cancelAnimationFrame(field.frame);
+    for (const section of field.sections) {
+      if (section.withhold !== undefined) section.withhold();
+    }
+  }
+
   function ask(field, situation, late) {
     for (const section of field.sections) {
       if (section.late !== late) continue;
@@ -80,5 +91,5 @@
     };
   }
 
-  bf.panel_field = { fieldOf, answer };
+  bf.panel_field = { fieldOf, answer, withhold };
 })((globalThis.bufferfolio = globalThis.bufferfolio || {}));

@@ -18,6 +18,7 @@
   const { celsiusOf, complaint, degreesIn, numberOf } = bf.panel_state;
 
   const UNIT_CHOICE = "temperature-unit";
+  const WITH_UNIT = /^(.*[\d.,])\s*°?\s*([CF])$/i;
 
   /** The inputs of a page, by name.
    * @param {ParentNode} root
@@ -91,9 +92,11 @@
   function useUnit(inputs, unit) {
     for (const input of inputs.values()) {
       if (!input.degrees) continue;
-      const celsius = celsiusOf(numberOf(input.field.value), input.unit);
+      const celsius = valueOf(input);
+      const faulty = wrongWith(input) !== "";
       input.unit = unit;
-      if (!Number.isNaN(celsius)) input.field.value = degreesText(input, celsius);
+      // What could not be used was meant in the other unit.
+      if (!faulty && !Number.isNaN(celsius)) input.field.value = degreesText(input, celsius);
       judge(input);
     }
     for (const place of document.querySelectorAll("[data-degrees]")) place.textContent = "°" + unit;
@@ -104,19 +107,32 @@
     return String(Number(degreesIn(celsius, input.unit).toFixed(2)));
   }
 
+  /** What stands in a field: a number as text, and the unit of a temperature; "77 F" names its own.
+   * @param {Input} input
+   * @returns {{text: string, unit: string}}
+   */
+  function typedIn(input) {
+    const text = input.field.value;
+    const found = input.degrees ? WITH_UNIT.exec(text.trim()) : null;
+    if (found === null) return { text, unit: input.unit };
+    return { text: found[1], unit: found[2].toUpperCase() };
+  }
+
   /** The number in a field, of a temperature °C. @param {Input} input @returns {number} */
   function valueOf(input) {
-    return celsiusOf(numberOf(input.field.value), input.unit);
+    const { text, unit } = typedIn(input);
+    return celsiusOf(numberOf(text), unit);
   }
 
   /** @param {Input} input @returns {string} what is wrong with its text, "" where nothing is */
   function wrongWith(input) {
-    const text = input.field.value;
+    const { text, unit } = typedIn(input);
     if (input.optional && text.trim() === "") return "";
     // The second decimal of a converted limit must not shut it out.
     const [low, high] = [input.low, input.high].map((limit) =>
-      input.unit === "F" ? Number(degreesIn(limit, "F").toFixed(2)) : limit);
-    return complaint(text, low, high);
+      unit === "F" ? Number(degreesIn(limit, "F").toFixed(2)) : limit);
+    const words = complaint(text, low, high);
+    return words === "" || !input.degrees ? words : words.replace(/\.$/, ` °${unit}.`);
   }
 
   /** The text that belongs to a slider's place. */
@@ -170,7 +186,7 @@
         values[input.name] = Number(input.field.selectedOptions[0].dataset.factor);
       } else if (wrongWith(input) === "") {
         values[input.name] = valueOf(input);
-        texts.set(input.name, text.trim() === "" ? "" : String(numberOf(text)));
+        texts.set(input.name, written(input));
       } else {
         values[input.name] = NaN;
         faults.add(input.name);
@@ -178,6 +194,13 @@
       }
     }
     return { texts, values, faulty, faults };
+  }
+
+  /** The text of a sound field as it stands in the address: one way for every number. */
+  function written(input) {
+    const { text, unit } = typedIn(input);
+    if (text.trim() === "") return "";
+    return String(numberOf(text)) + (unit === input.unit ? "" : unit);
   }
 
   /** Set the inputs; what is not named goes back to the page's own value.

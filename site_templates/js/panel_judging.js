@@ -5,6 +5,8 @@
   const { ZERO_CELSIUS } = bf.water;
   const { celsius, fixed, plain, signed } = bf.formatting;
 
+  const WITHHELD = "A condition above cannot be used; see beside it. Nothing is judged until it can.";
+  const ANEW = "Read again. If it stays so, throw the batch away and make it anew.";
   const ASKED = "Type what the meter reads, above, and it is judged here.";
 
   /** @param {object} data @returns {Section | null} */
@@ -23,30 +25,37 @@
         const verdict = verdictOf(answered.judgement);
         return { lines, facts: factsOf(situation, answered), verdict };
       },
+      withhold() {
+        lines = [];
+        withhold(root);
+      },
     };
   }
 
   /** What can be said of a situation. Pure.
    * @param {Situation} situation
-   * @returns {{band: Band, judgement: Judgement | null, temperature: number}}
+   * @returns {{band: Band, judgement: Judgement | null, forbidden: boolean,
+   *   gas: string}}  forbidden to correct; gas that the batch may be giving off, in words
    */
   function answerTo({ subject, temperature, reading, compensation, recipe, values }) {
     const band = bf.uncertainty.bandOf(subject, temperature, recipe);
-    if (Number.isNaN(reading)) return { band, judgement: null, temperature };
+    const { never_corrected: forbidden } = subject;
+    if (Number.isNaN(reading)) return { band, judgement: null, forbidden, gas: "" };
     const elsewhere = values["batch-temperature"];
     const batch = Number.isNaN(elsewhere) ? null : elsewhere + ZERO_CELSIUS;
     const judgement = bf.judging.judged(
       subject, temperature, reading, compensation, batch, recipe);
-    return { band, judgement, temperature };
+    const gas = judgement.refusal === "" ? bf.panel_dosing.gasText(subject, judgement.pH) : "";
+    return { band, judgement, forbidden, gas };
   }
 
   /** The words of an answer by the place where they belong. Pure.
    * @returns {Record<string, string>} */
-  function wordsOf({ band, judgement }) {
+  function wordsOf({ band, judgement, forbidden, gas }) {
     const words = {
       half_width: fixed(band.half_width, 2), low: fixed(band.low, 2), high: fixed(band.high, 2),
       mark: "", words: ASKED, action: "", reading: "", stands_for: "", band: rangeOf(band),
-      should_show: "", difference: "", target: "", batch_temperature: "", batch: "",
+      should_show: "", difference: "", target: "", batch_temperature: "", batch: "", gas,
     };
     if (judgement === null) return words;
     words.reading = plain(judgement.reading, 5);
@@ -54,7 +63,7 @@
       return { ...words, mark: "✗", words: bf.measurements.REFUSALS[judgement.refusal] };
     }
     const { mark, words: said, action } = bf.judging.VERDICTS[judgement.verdict];
-    Object.assign(words, { mark, words: said, action });
+    Object.assign(words, { mark, words: said, action: forbidden && mark === "✗" ? ANEW : action });
     words.difference = signed(judgement.difference, 2);
     if (judgement.pH !== judgement.reading) {
       words.stands_for = fixed(judgement.pH, 2);
@@ -81,13 +90,19 @@
     return `${fixed(pH, 2)}, ${fixed(expected, 2)} expected; ${use}`;
   }
 
-  function write(root, answered) {
-    const words = wordsOf(answered);
-    const { judgement, band } = answered;
+  function show(words) {
     for (const [name, text] of Object.entries(words)) {
       for (const place of document.querySelectorAll(`[data-shows="${name}"]`)) {
         if (place.textContent !== text) place.textContent = text;
       }
+    }
+  }
+
+  function write(root, answered) {
+    const words = wordsOf(answered);
+    const { judgement, band } = answered;
+    show(words);
+    for (const [name, text] of Object.entries(words)) {
       const row = root.querySelector(`[data-row="${name}"]`);
       if (row !== null) row.hidden = text === "";
     }
@@ -95,6 +110,13 @@
     for (const place of root.querySelectorAll("[data-judged]")) place.hidden = !judged;
     root.dataset.verdict = verdictOf(judgement);
     writeContributions(document.querySelector("[data-contributions]"), band);
+  }
+
+  function withhold(root) {
+    show({ mark: "", words: WITHHELD, action: "", gas: "" });
+    root.querySelector('[data-row="gas"]').hidden = true;
+    for (const place of root.querySelectorAll("[data-judged]")) place.hidden = true;
+    root.dataset.verdict = "none";
   }
 
   function verdictOf(judgement) {
@@ -132,7 +154,7 @@
     if (words.batch !== "") {
       lines.push(`batch at ${words.batch_temperature} °C: pH ${words.batch}`);
     }
-    if (words.reading !== "") lines.push(`${words.words} ${words.action}`.trim());
+    if (words.reading !== "") lines.push(`${words.words} ${words.action} ${words.gas}`.trim());
     return lines;
   }
 

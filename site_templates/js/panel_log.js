@@ -26,7 +26,14 @@
     part("live").hidden = false;
     listen(view, root);
     show(view);
-    return { name: "log", late: true, answer: (situation) => answer(view, situation) };
+    return {
+      name: "log",
+      late: true,
+      answer: (situation) => answer(view, situation),
+      withhold() {
+        view.situation = null;
+      },
+    };
   }
 
   function answer(view, situation) {

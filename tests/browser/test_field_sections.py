@@ -86,7 +86,7 @@ def test_what_makes_the_band_is_listed_largest_first(visitor: Visitor, tris: Sub
     assert len(sizes) > 3
 
 
-def test_a_reading_that_is_none_is_answered(visitor: Visitor) -> None:
+def test_a_reading_that_is_none_is_answered(visitor: Visitor, tris: Subject) -> None:
     page = visitor.open(SHEET)
     field(page, "reading").fill("15.2")
     assert verdict(page) == "refused"
@@ -98,16 +98,33 @@ def test_a_reading_that_is_none_is_answered(visitor: Visitor) -> None:
     field(page, "reading").fill("8.1")
     field(page, "temperature").fill("55")
     expect(page.locator("#message-temperature")).to_have_text(
-        "55 is too high. Give a number from 2 to 40."
+        "55 is too high. Give a number from 2 to 40 °C."
     )
     expect(page.locator("#input-temperature")).to_have_attribute("aria-invalid", "true")
-    expect(page.locator("[data-judging].stale")).to_have_count(1)
+    assert told(page, "words").startswith("A condition above cannot be used")
+    assert dose(page, "words").startswith("A condition above cannot be used")
+    expect(page.locator(".portions")).to_be_hidden()
+    expect(page.locator('[data-fault="results"]')).to_be_hidden()
+    page.locator('[data-action="keep"]').last.click()
+    expect(page.locator("[data-kept]").first).to_contain_text("no reading to keep")
+    field(page, "temperature").fill("77 F")
+    expect(page.locator("#message-temperature")).to_have_text("")
+    warm = judged(tris, 25.0 + ZERO_CELSIUS, 8.1)
+    assert verdict(page) == warm.verdict
+    page.reload()
+    assert field(page, "temperature").input_value() == "77F"
+    assert verdict(page) == warm.verdict
 
 
 def test_degrees_fahrenheit_are_the_same_temperatures(visitor: Visitor, tris: Subject) -> None:
     page = visitor.open(SHEET, "#temperature=20&reading=8.3")
-    field(page, "temperature-unit").select_option("F", force=True)
+    field(page, "temperature-unit").select_option("F")
     assert field(page, "temperature").input_value() == "68"
+    field(page, "temperature-unit").select_option("C")
+    field(page, "temperature").fill("77")  # meant in the other unit, and so it is taken
+    field(page, "temperature-unit").select_option("F")
+    assert field(page, "temperature").input_value() == "77"
+    assert told(page, "band").startswith(fixed(expected_pH(tris, 25.0 + ZERO_CELSIUS), 2))
     field(page, "temperature").fill("50")
     assert told(page, "band").startswith(fixed(expected_pH(tris, 10.0 + ZERO_CELSIUS), 2))
     field(page, "temperature").fill("20")
@@ -204,8 +221,15 @@ def test_a_gas_that_may_come_off_is_named(visitor: Visitor) -> None:
     page = visitor.open("formulations/sanitising-bath.html", "#temperature=15&reading=7.4")
     danger = page.locator('[data-dose="dangers"]')
     expect(danger).to_be_visible()
-    assert "chlorine with acid" in danger.inner_text()
+    assert "chlorine (with acid)" in danger.inner_text()
     expect(page.locator(".portions")).to_be_visible()
+    # So acid that the gas is there already.
+    field(page, "reading").fill("5.2")
+    expect(danger).to_contain_text("may be giving off chlorine (with acid)")
+    expect(page.locator('[data-judging] [data-shows="gas"]')).to_contain_text("chlorine")
+    expect(page.locator(".portions")).to_be_hidden()
+    field(page, "reading").fill("8.4")
+    expect(danger).not_to_contain_text("may be giving off")
 
 
 @pytest.mark.parametrize("key", ["tris-assay", "sanitising-bath", "plain-water", "spent-cleaner"])

@@ -30,7 +30,7 @@ def keep(page: Page, reading: str, note: str = "", initials: str = "") -> None:
     field(page, "reading").fill(reading)
     page.locator("#log-note").fill(note)
     page.locator("#log-initials").fill(initials)
-    page.locator('[data-action="keep"]').first.click()
+    page.locator('[data-log] [data-action="keep"]').click()
     expect(page.locator('[data-log="rows"] tr')).to_have_count(before + 1)
     expect(page.locator('[data-log="told"]')).to_contain_text("Kept: pH")
 
@@ -54,7 +54,7 @@ def test_a_reading_is_kept_found_again_and_taken_away(visitor: Visitor, width: i
     page = visitor.page
     page.set_viewport_size({"width": width, "height": 800})
     visitor.open(SHEET)
-    page.locator('[data-action="keep"]').first.click()
+    page.locator('[data-log] [data-action="keep"]').click()
     expect(page.locator('[data-log="told"]')).to_contain_text("no reading to keep")
     keep(page, "8,35", '=cmd|"x"!A1, second line', "AB")
     keep(page, "8.16")
@@ -70,7 +70,7 @@ def test_a_reading_is_kept_found_again_and_taken_away(visitor: Visitor, width: i
     assert first["expected (pH)"] == "8.16"
     assert float(first["band (± pH)"]) > 0.0
     assert "Outside tolerance" in first["verdict"]
-    assert first["first portion"].endswith("mL")
+    assert first["suggested first portion"].endswith("mL")
     assert first["likeliest fault"]
     assert first["note"] == '\'=cmd|"x"!A1, second line'
     assert first["initials"] == "AB"
