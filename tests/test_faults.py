@@ -148,6 +148,18 @@ def test_errors_that_both_readings_share_do_not_blur_their_difference() -> None:
     assert math.sqrt(difference) < 0.6 * math.sqrt(covariance[0, 0])
 
 
+def test_what_is_not_modelled_errs_the_same_way_in_all_readings() -> None:
+    """Half of 0.3, squared, in every element of the covariance, and nothing else changed."""
+    formulation = shipped().formulations["gel-tris-borate"]
+    silent = replace(formulation, tolerances=replace(formulation.tolerances, model=None))
+    two = [Reading(temperature=ROOM, pH=8.4), Reading(temperature=288.15, pH=8.6, dilution=2.0)]
+    with_it, without = (
+        np.linalg.inv(_evidence(subject_of(each, shipped()), two).inverse)
+        for each in (formulation, silent)
+    )
+    assert with_it - without == pytest.approx(np.full((2, 2), 0.15**2), rel=1e-6)
+
+
 @pytest.mark.parametrize("readings", [1, 2])
 def test_the_mean_likelihood_is_an_integral(readings: int) -> None:
     """Closed form against quadrature, curves being straight between their points."""

@@ -9,6 +9,7 @@ from bufferfolio.activity import MODELS, ActivityModel
 from bufferfolio.composition import water_mass
 from bufferfolio.definitions import Tolerances
 from bufferfolio.equilibrium import solve
+from bufferfolio.reading_contexts import reading_context
 from bufferfolio.recipes import recipe_water, shares
 from bufferfolio.speciation import Mixture
 from bufferfolio.subjects import Subject, reference_temperature, subject_of
@@ -78,7 +79,7 @@ def drawn_readings(subject: Subject, temperature: float, random: np.random.Gener
         )
         model = shifted(subject.model, 0.5 * off)
         solved = solve(mixture, constants, model, subject.interactions)
-        readings.append(solved.pH + draw(care.meter))
+        readings.append(solved.pH + draw(care.meter) + draw(care.model))
     return np.concatenate(readings)
 
 
@@ -129,6 +130,33 @@ def test_tolerances_of_a_file_take_the_place_of_the_usual_ones() -> None:
     assert named["meter"]
     assert not named["temperature"]
     assert band_of(careful, 298.15).half_width < band_of(usual, 298.15).half_width
+
+
+def test_what_a_file_says_is_not_modelled_widens_the_band_and_nothing_is_assumed() -> None:
+    usual, honest = stated("tris-assay"), stated("tris-assay", model=0.3)
+    without, with_it = band_of(usual, 298.15), band_of(honest, 298.15)
+    assert "model" not in {item.kind for item in without.contributions}
+    assert effect(honest, "model") == 0.3
+    assert with_it.ranked[0].kind == "model"
+    assert with_it.ranked[0].stated
+    assert with_it.pH == without.pH
+    assert with_it.half_width == pytest.approx(np.hypot(without.half_width, 0.3), rel=1e-12)
+
+
+def test_the_sheet_has_a_line_for_what_is_not_modelled_only_where_it_is_stated() -> None:
+    def lines(this: Subject) -> list[tuple[str, str, str]]:
+        rows = reading_context(this, 298.15).tolerances
+        return [(row.of, row.value, row.whence) for row in rows if "modelled" in row.of]
+
+    assert lines(stated("tris-assay", meter=0.05)) == []
+    assert lines(stated("tris-assay", model=0.3)) == [
+        ("the prediction, for what is not modelled here", "± 0.3 in pH", "stated in its file")
+    ]
+
+
+def test_the_gel_buffer_read_where_it_usually_reads_is_within_its_band() -> None:
+    band = band_of(subject("gel-tris-borate"), 298.15)
+    assert band.low < 8.4 < band.high
 
 
 def test_the_band_is_the_root_of_the_sum_of_squares_largest_first() -> None:

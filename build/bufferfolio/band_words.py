@@ -20,4 +20,5 @@ WORDS: Final[Mapping[str, str]] = {
     "make-up": "amount of water, or volume made up to",
     "temperature": "thermometer",
     "meter": "meter",
+    "model": "what is not modelled here",
 }

@@ -192,12 +192,13 @@ class Titrant:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Tolerances:
-    """How well people weigh, measure and read at a place; each is a k = 2 interval."""
+    """How well things are weighed, measured, read and modelled; each is a k = 2 interval."""
 
     weighing: float | None = None  # relative, of each mass; None: not stated, here and below
     volume: float | None = None  # relative, of each volume
     temperature: float | None = None  # K
     meter: float | None = None  # in pH
+    model: float | None = None  # in pH: what the prediction itself may be off by
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -156,6 +156,7 @@ def _care_data(care: Care) -> Data:
         "volume": care.volume,
         "temperature": care.temperature,
         "meter": care.meter,
+        "model": care.model,
         "stated": list(care.stated),
     }
 

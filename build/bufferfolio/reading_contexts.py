@@ -68,14 +68,19 @@ def _tolerances(care: Care) -> tuple[ToleranceRow, ...]:
         "temperature": f"± {plain(care.temperature)} K",
         "meter": f"± {plain(care.meter)} in pH",
     }
-    return tuple(
+    rows = [
         ToleranceRow(
             of=ASSUMED[name].of.removesuffix(", relative"),
             value=value,
             whence="stated in its file" if name in care.stated else f"assumed: {ASSUMED[name].why}",
         )
         for name, value in values.items()
-    )
+    ]
+    if "model" in care.stated:
+        value = f"± {plain(care.model)} in pH"
+        rows.append(ToleranceRow(of=LEFT_OUT, value=value, whence="stated in its file"))
+    return tuple(rows)
 
 
+LEFT_OUT: Final = "the prediction, for what is not modelled here"
 KNOWN: Final = {True: "stated", False: "assumed"}

@@ -38,6 +38,7 @@ class Care:
     volume: float  # relative
     temperature: float  # K
     meter: float  # in pH
+    model: float  # in pH; 0 where the file knows of nothing that is left out
     stated: tuple[str, ...]  # names of those that the file states
 
 
@@ -49,6 +50,7 @@ def care_of(formulation: Formulation) -> Care:
         volume=_or_assumed(stated.volume, "volume"),
         temperature=_or_assumed(stated.temperature, "temperature"),
         meter=_or_assumed(stated.meter, "meter"),
+        model=0.0 if stated.model is None else stated.model,
         stated=_stated(stated),
     )
 
@@ -58,7 +60,7 @@ def _or_assumed(value: float | None, key: str) -> float:
 
 
 def _stated(tolerances: Tolerances) -> tuple[str, ...]:
-    names = ("weighing", "volume", "temperature", "meter")
+    names = ("weighing", "volume", "temperature", "meter", "model")
     return tuple(name for name in names if getattr(tolerances, name) is not None)
 
 

@@ -23,7 +23,15 @@ from bufferfolio.tolerances import ASSUMED, pK_doubt
 from bufferfolio.water import FloatArray
 
 Kind = Literal[
-    "constant", "water", "activity", "weighing", "content", "make-up", "temperature", "meter"
+    "constant",
+    "water",
+    "activity",
+    "weighing",
+    "content",
+    "make-up",
+    "temperature",
+    "meter",
+    "model",
 ]
 
 
@@ -88,6 +96,7 @@ def band_of(
         _plain("activity", by.long_range * allowance),
         *_of_recipe(subject, made, mixture, dilution, by),
         *_of_reading(subject, by),
+        *_of_model(subject),
     )
     return Band(
         temperature=temperature,
@@ -176,6 +185,12 @@ def _of_reading(subject: Subject, by: Sensitivities) -> list[Contribution]:
         ),
         _named("meter", "", care.meter, stated="meter" in care.stated),
     ]
+
+
+def _of_model(subject: Subject) -> list[Contribution]:
+    """Return what the author knows to be left out, which no sensitivity can carry."""
+    off = subject.care.model
+    return [_named("model", "", off, stated=True)] if off > 0.0 else []
 
 
 def _named(kind: Kind, name: str, effect: float, *, stated: bool) -> Contribution:

@@ -12,6 +12,7 @@
     "make-up": "amount of water, or volume made up to",
     temperature: "thermometer",
     meter: "meter",
+    model: "what is not modelled here",
   };
 
   /** What one contribution comes from. Mirrors `contribution_words`.

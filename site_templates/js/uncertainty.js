@@ -45,6 +45,8 @@
         "temperature", "", by.temperature * care.temperature, care.stated.includes("temperature"),
       ),
       named("meter", "", care.meter, care.stated.includes("meter")),
+      // What the author knows to be left out, which no sensitivity can carry.
+      ...(care.model > 0 ? [named("model", "", care.model, true)] : []),
     ];
     const halfWidth = combined(contributions);
     return {

@@ -77,6 +77,7 @@ def _tolerances(shape: FormulationShape) -> Tolerances:
         volume=stated.volume,
         temperature=stated.temperature,
         meter=stated.meter,
+        model=stated.model,
     )
 
 

@@ -224,7 +224,7 @@ class TitrantShape(Shape):
 
 
 class TolerancesShape(Shape):
-    """How well people weigh, measure and read there, each as a k = 2 interval."""
+    """How well things are weighed, measured, read and modelled, each as a k = 2 interval."""
 
     weighing: measures.Share | None = Field(None, description="Of each mass, such as 0.5 %.")
     volume: measures.Share | None = Field(None, description="Of each volume, such as 1 %.")
@@ -233,6 +233,11 @@ class TolerancesShape(Shape):
     )
     meter: measures.PHDifference | None = Field(
         None, description="Of the meter after its calibration, in pH, such as 0.02."
+    )
+    model: measures.PHDifference | None = Field(
+        None,
+        description="Of the prediction itself, in pH, where it is known to leave something out; "
+        "none without it.",
     )
 
 
