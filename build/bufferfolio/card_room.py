@@ -44,8 +44,8 @@ LEAST_ROWS: Final = 6  # of readings in each
 LEAST_LOG, MOST_LOG = 4, 12
 
 # All in mm. What is left of a page beside headings, notes and what every card has.
-FIRST_PAGE: Final = 149.0
-SECOND_PAGE: Final = 162.0
+FIRST_PAGE: Final = 144.8
+SECOND_PAGE: Final = 153.0
 LINE: Final = 4.45
 SMALL: Final = 4.2
 ROW: Final = 5.35

@@ -138,10 +138,17 @@ def _titrants(
                 reagent=reagent,
                 direction=titrant.direction,
                 molarity=None if diluted is None else diluted.value / LITRES_PER_M3,
-                label=reagent.label + (f", {diluted.stated}" if diluted else ""),
+                label=_titrant_label(reagent, diluted.stated if diluted else ""),
             )
         )
     return tuple(titrants)
+
+
+def _titrant_label(reagent: Reagent, strength: str) -> str:
+    # A bottle's own strength stands in its name: the two must not be taken for each other.
+    if not strength:
+        return reagent.label
+    return f"{reagent.label}, {strength if reagent.stock is None else f'diluted to {strength}'}"
 
 
 def _check_dangers(
