@@ -58,7 +58,7 @@ def open_water(mixture: Mixture, monkeypatch: pytest.MonkeyPatch, atmospheres: f
     return subject_of(shipped().formulations["plain-water"], shipped())
 
 
-# 350 ppm: lecture of the James Cook University, seen; 3e-4 atm: Dutch, University of Wisconsin –
+# 350 ppm: course notes, James Cook University, seen; 3e-4 atm: Dutch, University of Wisconsin –
 # Green Bay, seen, one decimal; 420 µatm: worked out apart from this code, no published value.
 @pytest.mark.parametrize(
     ("atmospheres", "published", "within"),
