@@ -382,7 +382,7 @@ def test_a_sheet_says_who_chose_its_model_and_what_counts_as_zero(
     text = folio.pages[f"formulations/{key}.html"].one("main").text()
     chosen = LIBRARY.formulations[key].model is None
     assert ("this one was chosen by the ionic strength" in text) == chosen
-    assert ("The file names this model." in text) != chosen
+    assert ("Its definition names this model." in text) != chosen
     subject = sheets[key].subject
     assert ("pair counts as zero" in text) == subject.model.uses_interactions
     if subject.model.uses_interactions and subject.interactions:
