@@ -14,6 +14,7 @@
   const SHARE = 80; // % of the whole
   const OWN = ["volume", "target", "share", "dilution"];
   const NOTHING = "—";
+  const NEUTRAL = 7; // the near side of it is neither acid nor base, whatever the limits of use
   const NONE = { words: "", dangers: "", first: "", now_downward: NOTHING, now_upward: NOTHING };
   // What comes before a correction, by the verdict on the reading.
   const FIRST = {
@@ -107,8 +108,9 @@
   /** What a batch may be giving off by itself: the gas is there before anybody adds anything. */
   function gasText(subject, pH) {
     const { low, high } = subject.use_pH;
-    if (pH >= low && pH <= high) return "";
-    const cause = pH < low ? " with acid" : " with base";
+    const acid = pH < Math.min(low, NEUTRAL);
+    if (!acid && pH <= Math.max(high, NEUTRAL)) return "";
+    const cause = acid ? " with acid" : " with base";
     const releases = subject.recipe.parts.flatMap((part) => part.releases);
     const gases = Array.from(new Set(releases)).filter((danger) => danger.endsWith(cause));
     if (gases.length === 0) return "";
