@@ -47,7 +47,7 @@ def test_what_the_file_leaves_to_the_program(
     visitor = stranger(brine)
     page = visitor.open("formulations/brine.html")
     expect(page.locator("[data-checks]")).to_contain_text("all agree")
-    model = page.get_by_text("The file names no model")
+    model = page.get_by_text("Its definition names no model")
     expect(model).to_contain_text("Specific ion interaction")
     expect(model).to_contain_text("chosen by the ionic strength")
     expect(page.get_by_text("pair counts as zero").first).to_be_visible()
