@@ -64,6 +64,8 @@
     }
     const { mark, words: said, action } = bf.judging.VERDICTS[judgement.verdict];
     Object.assign(words, { mark, words: said, action: forbidden && mark === "✗" ? ANEW : action });
+    // Nobody is sent to read again, or to correct, what may be giving off gas.
+    if (gas !== "") words.action = "";
     words.difference = signed(judgement.difference, 2);
     if (judgement.pH !== judgement.reading) {
       words.stands_for = fixed(judgement.pH, 2);
